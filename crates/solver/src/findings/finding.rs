@@ -1,0 +1,248 @@
+//! The findings, with their numbers inside.
+
+use super::catalog::{Severity, ThresholdOrigin};
+use serde::Serialize;
+
+/// A conclusion about the data. Windows by name, positions in the axis' unit.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Finding {
+    /// The last line of a file has no line end: a run was killed while it wrote. The line was left out.
+    CutLastLine {
+        /// Window of the file.
+        window: String,
+        /// The file, as the job names it.
+        file: String,
+        /// Number of the line, from 1.
+        line: u64,
+    },
+    /// Frames that a continuation wrote again after a restart. The first copy was kept.
+    RepeatedFrames {
+        /// Window of the file.
+        window: String,
+        /// The file with the second copies, as the job names it.
+        file: String,
+        /// First of the repeated lines, from 1.
+        line: u64,
+        /// How many frames.
+        frames: u64,
+    },
+    /// A window with few independent samples.
+    FewEffectiveSamples {
+        /// The window.
+        window: String,
+        /// Its effective samples.
+        effective_samples: f64,
+    },
+    /// A window whose series supports no error at all: a constant coordinate, or a handful of samples.
+    NoErrorSupport {
+        /// The window.
+        window: String,
+        /// Its samples.
+        samples: u64,
+    },
+    /// Neighboring windows that no samples link.
+    NotLinked {
+        /// The window below the stretch.
+        below: String,
+        /// The window above it.
+        above: String,
+        /// Lower end of the uncovered stretch.
+        from: f64,
+        /// Upper end of the uncovered stretch.
+        to: f64,
+    },
+    /// The link by which the whole profile hangs is thin.
+    ThinLink {
+        /// The linked windows.
+        windows: (String, String),
+        /// Effective linking samples.
+        linking_samples: f64,
+    },
+    /// Bins between sampled ones that nothing visited.
+    UnsampledBins {
+        /// Lower end of the stretch.
+        from: f64,
+        /// Upper end of the stretch.
+        to: f64,
+        /// Bins in it.
+        bins: usize,
+    },
+    /// Bins with a free energy whose error the data do not support.
+    ErrorNotDetermined {
+        /// How many.
+        bins: usize,
+        /// How many bins have a free energy.
+        of: usize,
+    },
+}
+
+/// Effective samples of a window below which its intervals are wider than the samples alone would say; see the batch rule.
+pub const FEW_EFFECTIVE_SAMPLES: f64 = 20.0;
+/// Linking samples below which a link is thin: its part of any error across it exceeds about 1/√20 kT.
+pub const THIN_LINK: f64 = 20.0;
+
+/// A finding as it is written to files.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct FindingRecord {
+    /// Stable code.
+    pub code: &'static str,
+    /// How bad.
+    pub severity: Severity,
+    /// Windows concerned.
+    pub windows: Vec<String>,
+    /// The number that led to the finding.
+    pub measured: Option<f64>,
+    /// What it was held against.
+    pub threshold: Option<f64>,
+    /// Where the threshold comes from.
+    pub threshold_origin: ThresholdOrigin,
+    /// What was found.
+    pub message: String,
+    /// What to do.
+    pub advice: &'static str,
+}
+
+impl Finding {
+    /// Stable code, the same in every version.
+    #[must_use]
+    pub fn code(&self) -> &'static str {
+        match self {
+            Self::CutLastLine { .. } => "cut-last-line",
+            Self::RepeatedFrames { .. } => "repeated-frames",
+            Self::FewEffectiveSamples { .. } => "few-effective-samples",
+            Self::NoErrorSupport { .. } => "no-error-support",
+            Self::NotLinked { .. } => "not-linked",
+            Self::ThinLink { .. } => "thin-link",
+            Self::UnsampledBins { .. } => "unsampled-bins",
+            Self::ErrorNotDetermined { .. } => "error-not-determined",
+        }
+    }
+
+    /// How bad.
+    #[must_use]
+    pub fn severity(&self) -> Severity {
+        match self {
+            Self::CutLastLine { .. } | Self::RepeatedFrames { .. } | Self::FewEffectiveSamples { .. } => Severity::Note,
+            Self::NoErrorSupport { .. }
+            | Self::ThinLink { .. }
+            | Self::UnsampledBins { .. }
+            | Self::ErrorNotDetermined { .. } => Severity::Warning,
+            Self::NotLinked { .. } => Severity::Error,
+        }
+    }
+
+    /// Names of the windows concerned.
+    #[must_use]
+    pub fn windows(&self) -> Vec<String> {
+        match self {
+            Self::CutLastLine { window, .. }
+            | Self::RepeatedFrames { window, .. }
+            | Self::FewEffectiveSamples { window, .. }
+            | Self::NoErrorSupport { window, .. } => vec![window.clone()],
+            Self::NotLinked { below, above, .. } => vec![below.clone(), above.clone()],
+            Self::ThinLink { windows, .. } => vec![windows.0.clone(), windows.1.clone()],
+            Self::UnsampledBins { .. } | Self::ErrorNotDetermined { .. } => Vec::new(),
+        }
+    }
+
+    /// Measured value, threshold and the latter's origin.
+    fn measure(&self) -> (Option<f64>, Option<f64>, ThresholdOrigin) {
+        match *self {
+            Self::CutLastLine { .. } => (None, None, ThresholdOrigin::Occurrence),
+            Self::RepeatedFrames { frames, .. } => (Some(frames as f64), None, ThresholdOrigin::Occurrence),
+            Self::FewEffectiveSamples { effective_samples, .. } => (
+                Some(effective_samples),
+                Some(FEW_EFFECTIVE_SAMPLES),
+                ThresholdOrigin::Calibration,
+            ),
+            Self::NoErrorSupport { samples, .. } => (Some(samples as f64), None, ThresholdOrigin::Definition),
+            Self::NotLinked { .. } => (None, Some(crate::solve::LEAST_LINK), ThresholdOrigin::Definition),
+            Self::ThinLink { linking_samples, .. } => {
+                (Some(linking_samples), Some(THIN_LINK), ThresholdOrigin::Definition)
+            }
+            Self::UnsampledBins { bins, .. } | Self::ErrorNotDetermined { bins, .. } => {
+                (Some(bins as f64), None, ThresholdOrigin::Occurrence)
+            }
+        }
+    }
+
+    /// What was found, in words.
+    #[must_use]
+    pub fn message(&self) -> String {
+        match self {
+            Self::CutLastLine { file, line, .. } => {
+                format!("{file}:{line}: the last line has no line end and was left out")
+            }
+            Self::RepeatedFrames { file, line, frames, .. } => {
+                format!(
+                    "{file}:{line}: {frames} frames had been written before and were left out; the first copies were kept"
+                )
+            }
+            Self::FewEffectiveSamples {
+                window,
+                effective_samples,
+            } => {
+                format!("window `{window}` holds only some {effective_samples:.0} independent samples")
+            }
+            Self::NoErrorSupport { window, samples } => {
+                format!("the {samples} samples of window `{window}` support no error: too few, or all alike")
+            }
+            Self::NotLinked { below, above, from, to } => {
+                format!(
+                    "no samples link window `{below}` with window `{above}`; the axis is not covered between {from:.6} and {to:.6}"
+                )
+            }
+            Self::ThinLink {
+                windows: (a, b),
+                linking_samples,
+            } => {
+                format!("windows `{a}` and `{b}` hang together by {linking_samples:.1} effective samples")
+            }
+            Self::UnsampledBins { from, to, bins } => {
+                format!("no sample lies between {from:.6} and {to:.6} ({bins} bins)")
+            }
+            Self::ErrorNotDetermined { bins, of } => {
+                format!("{bins} of {of} bins have a free energy but no error that the data support")
+            }
+        }
+    }
+
+    /// What to do.
+    #[must_use]
+    pub fn advice(&self) -> &'static str {
+        match self {
+            Self::CutLastLine { .. } => {
+                "nothing, if the run was stopped on purpose; otherwise finish the run and solve again"
+            }
+            Self::RepeatedFrames { .. } => {
+                "nothing, if the run was restarted from a checkpoint; otherwise check that the files belong to one run"
+            }
+            Self::FewEffectiveSamples { .. } => "run the window longer; its errors are widened until then",
+            Self::NoErrorSupport { .. } => {
+                "check the column and the run; a coordinate that never moves, or a few frames, cannot show their own spread"
+            }
+            Self::NotLinked { .. } => {
+                "add a window between the two, or set `allow_gaps = true` to solve each group with a zero of its own"
+            }
+            Self::ThinLink { .. } => "add a window between the two, or run both longer",
+            Self::UnsampledBins { .. } => "add a window there, or narrow the range of the profile",
+            Self::ErrorNotDetermined { .. } => "run the windows named in other findings longer, or widen the bins",
+        }
+    }
+
+    /// The finding as it is written to files.
+    #[must_use]
+    pub fn record(&self) -> FindingRecord {
+        let (measured, threshold, threshold_origin) = self.measure();
+        FindingRecord {
+            code: self.code(),
+            severity: self.severity(),
+            windows: self.windows(),
+            measured,
+            threshold,
+            threshold_origin,
+            message: self.message(),
+            advice: self.advice(),
+        }
+    }
+}

@@ -1,0 +1,5 @@
+//! Arithmetic that everything else stands on.
+
+mod ordered;
+
+pub(crate) use ordered::{CHUNK, ordered_map};

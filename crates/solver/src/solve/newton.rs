@@ -1,0 +1,91 @@
+//! Damped Newton steps: the default.
+
+use super::certify::{largest, newton_step};
+use super::likelihood::Likelihood;
+use super::method::{Minimized, Minimizer, Progress, SolveOptions, Stopped};
+use crate::ensemble::Ensemble;
+use std::ops::ControlFlow;
+
+/// Change of any f, in kT, beyond which the shares are looked up again.
+const REFRESH_BEYOND: f64 = 1.0;
+/// Largest step, in kT: the exponentials of the shares stay tame, and a start that is far off is reached in a few more steps.
+const LONGEST_STEP: f64 = 2.0;
+/// Below this step, in kT, the likelihood is a parabola and a decrease need not be checked.
+const SURE_STEP: f64 = 1e-4;
+
+pub(super) struct Newton;
+
+impl Minimizer for Newton {
+    fn minimize(
+        &self,
+        ensemble: &Ensemble,
+        gauge: usize,
+        start: &[f64],
+        options: &SolveOptions,
+        progress: &mut Progress<'_>,
+    ) -> Result<Minimized, Stopped> {
+        let mut f = start.to_vec();
+        let mut likelihood = Likelihood::at(ensemble, &f);
+        let mut delta = vec![0.0; f.len()];
+        let limit = options.max_iterations.unwrap_or(200);
+        for iteration in 1..=limit {
+            let Some((mut step, _)) = newton_step(&likelihood, &delta, gauge) else {
+                return Ok(Minimized {
+                    f,
+                    iterations: iteration,
+                });
+            };
+            let length = largest(&step);
+            if progress(iteration, Some(length)) == ControlFlow::Break(()) {
+                return Err(Stopped);
+            }
+            if length > LONGEST_STEP {
+                for s in &mut step {
+                    *s *= LONGEST_STEP / length;
+                }
+            }
+            let fraction = if length < SURE_STEP {
+                1.0
+            } else {
+                decreasing_fraction(&likelihood, &delta, &step)
+            };
+            for (d, s) in delta.iter_mut().zip(&step) {
+                *d += fraction * s;
+            }
+            f = likelihood
+                .shares()
+                .reference()
+                .iter()
+                .zip(&delta)
+                .map(|(f, d)| f + d)
+                .collect();
+            // One more step from here would be below the tolerance squared: the certificate will confirm it.
+            if length < options.tolerance.sqrt().min(SURE_STEP) * 1e-2 || fraction == 0.0 {
+                return Ok(Minimized {
+                    f,
+                    iterations: iteration,
+                });
+            }
+            if largest(&delta) > REFRESH_BEYOND {
+                likelihood = Likelihood::at(ensemble, &f);
+                delta.fill(0.0);
+            }
+        }
+        Ok(Minimized { f, iterations: limit })
+    }
+}
+
+/// The longest of 1, ½, ¼… of the step that lowers the likelihood by a thousandth of what its slope promises; 0 if none does.
+fn decreasing_fraction(likelihood: &Likelihood<'_>, delta: &[f64], step: &[f64]) -> f64 {
+    let here = likelihood.evaluate(delta);
+    let slope: f64 = here.gradient.iter().zip(step).map(|(g, s)| g * s).sum();
+    let mut fraction = 1.0;
+    for _ in 0..40 {
+        let trial: Vec<f64> = delta.iter().zip(step).map(|(d, s)| d + fraction * s).collect();
+        if likelihood.evaluate(&trial).value <= here.value + 1e-3 * fraction * slope {
+            return fraction;
+        }
+        fraction *= 0.5;
+    }
+    0.0
+}

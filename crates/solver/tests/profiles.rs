@@ -1,0 +1,256 @@
+//! Profiles against exact ones, and what must not change them.
+#![expect(clippy::unwrap_used, reason = "a test may fail loudly")]
+
+mod common;
+
+use common::{CellChoice, assemble, axis, bias, condense, sampled, solved};
+use spandrel_bias::Bias;
+use spandrel_solver::condense::{BinGrid, CellLattice, CellScheme};
+use spandrel_solver::ensemble::{Ensemble, WindowData};
+use spandrel_solver::influence::Influence;
+use spandrel_solver::profile::{BinStatus, Profile, ProfileError, ProfileRequest, Zero};
+use spandrel_solver::solve::SolveOptions;
+use spandrel_testkit::{HarmonicSystem, KnownSystem, OneDimensionalSystem, Restraint, Window, cases, tolerance};
+
+fn harmonic(center: f64, force_constant: f64) -> Restraint {
+    Restraint::Harmonic { center, force_constant }
+}
+
+fn draw(ensemble: &Ensemble, request: &ProfileRequest) -> Profile {
+    let solution = solved(ensemble, &SolveOptions::default());
+    let influence = Influence::of(ensemble, &solution).unwrap();
+    Profile::draw(ensemble, &influence, request).unwrap()
+}
+
+fn whole(zero: Zero) -> ProfileRequest {
+    ProfileRequest {
+        first_bin: None,
+        last_bin: None,
+        zero,
+    }
+}
+
+/// Share of 95 % intervals that hold the exact difference from the zero, and the mean square of z, over replicates of a case.
+fn coverage(system: &OneDimensionalSystem, width: f64, zero_at: f64, replicates: u64) -> (f64, f64) {
+    let (lower, _) = system.range();
+    let period = system.period();
+    let (mut held, mut squares, mut count) = (0.0, 0.0, 0.0);
+    for seed in 0..replicates {
+        let ensemble = sampled(system, period, lower, width, 100 + seed, &CellChoice::Lattice);
+        let profile = draw(&ensemble, &whole(Zero::Position { position: zero_at }));
+        let exact = |lower: f64, upper: f64| -(system.probability(lower, upper) / (upper - lower)).ln();
+        let zero = profile.bins.iter().find(|bin| bin.status == BinStatus::Zero).unwrap();
+        let offset = exact(zero.lower, zero.upper);
+        for bin in profile.bins.iter().filter(|bin| bin.status == BinStatus::Determined) {
+            let uncertainty = bin.uncertainty.unwrap();
+            let miss = bin.free_energy.unwrap() - (exact(bin.lower, bin.upper) - offset);
+            held += f64::from(u8::from(miss.abs() <= uncertainty.half_width_95));
+            squares += (miss / uncertainty.standard_error).powi(2);
+            count += 1.0;
+        }
+    }
+    (held / count, squares / count)
+}
+
+/// Bins along one profile hang together over some three windows, so 20 windows give seven or so independent statements a replicate.
+fn standard_error_of_share(replicates: u64, n_windows: usize) -> f64 {
+    (0.05 * 0.95 / (replicates as f64 * n_windows as f64 / 3.0)).sqrt()
+}
+
+#[test]
+fn intervals_hold_the_exact_profile_of_independent_samples_as_often_as_they_say() {
+    let case = cases::independent().unwrap();
+    let (lower, upper) = case.system.range();
+    let (share, mean_square) = coverage(&case.system, 0.05, f64::midpoint(lower, upper), 30);
+    let error = standard_error_of_share(30, case.system.windows().len());
+    assert!(
+        (share - 0.95).abs() < tolerance::STANDARD_ERRORS * error,
+        "{share} held, mean square z {mean_square}"
+    );
+    assert!(
+        (mean_square - 1.0).abs() < tolerance::STANDARD_ERRORS * (2.0_f64 / 200.0).sqrt(),
+        "{mean_square}"
+    );
+}
+
+#[test]
+fn intervals_hold_the_exact_profile_of_correlated_samples_on_a_periodic_axis_as_often_as_they_say() {
+    let case = cases::periodic().unwrap();
+    let (lower, _) = case.system.range();
+    let width = case.system.period().unwrap() / 72.0;
+    let (share, mean_square) = coverage(&case.system, width, lower + 30.5 * width, 30);
+    let error = standard_error_of_share(30, case.system.windows().len());
+    assert!(
+        (share - 0.95).abs() < tolerance::STANDARD_ERRORS * error,
+        "{share} held, mean square z {mean_square}"
+    );
+}
+
+#[test]
+fn profile_is_unchanged_when_a_window_is_split_in_two() {
+    let windows = [-0.4, 0.1, 0.6]
+        .map(|center| Window::independent(harmonic(center, 21.0), 1200))
+        .to_vec();
+    let system = HarmonicSystem::new(0.2, 1.3, windows).unwrap();
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.1, None).unwrap();
+    let mut biases: Vec<Bias> = system
+        .windows()
+        .iter()
+        .map(|window| bias(&window.restraint, &axis))
+        .collect();
+    let mut series = system.sample_all(9, 0);
+    let whole_window = assemble(&axis, bins, &biases, &series, &CellChoice::Samples);
+
+    let tail = series[1].split_off(500);
+    series.push(tail);
+    biases.push(biases[1].clone());
+    let split = assemble(&axis, bins, &biases, &series, &CellChoice::Samples);
+
+    let request = whole(Zero::Position { position: 0.25 });
+    let (one, two) = (draw(&whole_window, &request), draw(&split, &request));
+    assert_eq!(one.bins.len(), two.bins.len());
+    for (a, b) in one.bins.iter().zip(&two.bins) {
+        match (a.free_energy, b.free_energy) {
+            (Some(a), Some(b)) => assert!((a - b).abs() < tolerance::SOLVERS, "{a} against {b}"),
+            (a, b) => assert_eq!(a, b),
+        }
+    }
+}
+
+#[test]
+fn replicas_of_a_window_count_as_one_window_and_err_apart() {
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.1, None).unwrap();
+    let lattice = CellScheme::Lattice(CellLattice::new(bins, 6, &[]));
+    let windows = [-0.4, 0.1, 0.6]
+        .map(|center| Window::independent(harmonic(center, 21.0), 1500))
+        .to_vec();
+    let system = HarmonicSystem::new(0.2, 1.3, windows).unwrap();
+    let data = system
+        .windows()
+        .iter()
+        .zip(system.sample_all(12, 0))
+        .enumerate()
+        .map(|(k, (window, samples))| {
+            let bias = bias(&window.restraint, &axis);
+            let replicas = samples
+                .chunks(500)
+                .map(|part| condense(&lattice, &axis, &bias, part))
+                .collect();
+            WindowData {
+                name: format!("w{k}"),
+                bias,
+                weight: 1.0,
+                replicas,
+            }
+        })
+        .collect();
+    let ensemble = Ensemble::assemble(std::slice::from_ref(&axis), bins, data).unwrap();
+    assert_eq!((ensemble.n_windows(), ensemble.streams.len()), (3, 9));
+    assert!(ensemble.windows.iter().all(|window| window.n_samples == 1500));
+
+    let profile = draw(&ensemble, &whole(Zero::Minimum));
+    let bin = profile
+        .bins
+        .iter()
+        .find(|bin| bin.status == BinStatus::Determined)
+        .unwrap();
+    // Nine runs of up to 100 batches share the variance; a single one could not give more than 99 degrees of freedom.
+    assert!(bin.uncertainty.unwrap().degrees_of_freedom > 99.0);
+}
+
+#[test]
+fn unsampled_bins_are_empty_and_a_zero_on_one_is_refused() {
+    // A flat unbiased window and a gap in its samples.
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.25, None).unwrap();
+    let series: Vec<f64> = (0..600)
+        .map(|i| if i % 2 == 0 { 0.1 } else { 1.1 } + 0.01 * f64::from(i % 7))
+        .collect();
+    let biases = [bias(&Restraint::None, &axis)];
+    let ensemble = assemble(&axis, bins, &biases, &[series], &CellChoice::Lattice);
+    let profile = draw(&ensemble, &whole(Zero::Minimum));
+    let empty: Vec<bool> = profile.bins.iter().map(|bin| bin.free_energy.is_none()).collect();
+    assert_eq!(empty, [false, true, true, true, false]);
+    assert!(
+        profile.bins[1..4]
+            .iter()
+            .all(|bin| bin.status == BinStatus::Unsampled && bin.uncertainty.is_none())
+    );
+
+    let solution = solved(&ensemble, &SolveOptions::default());
+    let influence = Influence::of(&ensemble, &solution).unwrap();
+    for zero in [
+        Zero::Position { position: 0.6 },
+        Zero::Range { from: 0.0, to: 0.5 },
+        Zero::Position { position: 9.0 },
+    ] {
+        let refused = Profile::draw(&ensemble, &influence, &whole(zero));
+        assert!(
+            matches!(refused, Err(ProfileError::ZeroNotSampled { .. })),
+            "{zero:?}: {refused:?}"
+        );
+    }
+    let outside = ProfileRequest {
+        first_bin: Some(1),
+        last_bin: Some(3),
+        zero: Zero::Minimum,
+    };
+    assert_eq!(
+        Profile::draw(&ensemble, &influence, &outside),
+        Err(ProfileError::NothingSampled)
+    );
+}
+
+#[test]
+fn the_mean_over_a_range_is_minus_the_logarithm_of_the_mean_density_there() {
+    let case = cases::independent().unwrap();
+    let (lower, _) = case.system.range();
+    let ensemble = sampled(&case.system, None, lower, 0.05, 3, &CellChoice::Lattice);
+    let from = lower + 12.0 * 0.05;
+    let profile = draw(
+        &ensemble,
+        &whole(Zero::Range {
+            from,
+            to: from + 4.0 * 0.05,
+        }),
+    );
+    let in_range = profile
+        .bins
+        .iter()
+        .filter(|bin| bin.center() > from && bin.center() < from + 0.2);
+    let densities: Vec<f64> = in_range.map(|bin| (-bin.free_energy.unwrap()).exp()).collect();
+    assert_eq!(densities.len(), 4);
+    assert!((densities.iter().sum::<f64>() / 4.0 - 1.0).abs() < tolerance::SUMMATION_ORDER);
+    assert_eq!(profile.zero_position, None);
+}
+
+#[test]
+fn a_series_that_never_moves_supports_no_error() {
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.25, None).unwrap();
+    let moving: Vec<f64> = (0..400).map(|i| 0.3 + 0.1 * (f64::from(i) * 0.7).sin()).collect();
+    let biases = [bias(&harmonic(0.3, 5.0), &axis), bias(&harmonic(0.35, 5.0), &axis)];
+    let ensemble = assemble(&axis, bins, &biases, &[moving, vec![0.31; 400]], &CellChoice::Lattice);
+    let profile = draw(&ensemble, &whole(Zero::Position { position: 0.3 }));
+    assert!(
+        profile.bins.iter().all(|bin| bin.uncertainty.is_none()),
+        "{:?}",
+        profile.bins
+    );
+}
+
+#[test]
+fn results_are_the_same_bytes_for_any_number_of_threads() {
+    let case = cases::uneven().unwrap();
+    let (lower, _) = case.system.range();
+    let with_threads = |n: usize| {
+        let pool = rayon::ThreadPoolBuilder::new().num_threads(n).build().unwrap();
+        pool.install(|| {
+            let ensemble = sampled(&case.system, None, lower, 0.05, 3, &CellChoice::Lattice);
+            draw(&ensemble, &whole(Zero::Minimum)).bins
+        })
+    };
+    assert_eq!(with_threads(1), with_threads(3));
+}

@@ -1,0 +1,169 @@
+//! Running statistics against certified values and closed forms.
+#![expect(clippy::unwrap_used, reason = "a test may fail loudly")]
+
+use spandrel_solver::series::{BatchRule, BlockMeans, Cascade, MeanLag};
+use spandrel_testkit::{Correlation, autocorrelation, stream, tolerance};
+
+fn cascade(values: impl IntoIterator<Item = f64>) -> Cascade {
+    let mut cascade = Cascade::default();
+    for value in values {
+        cascade.push(value);
+    }
+    cascade
+}
+
+fn relative(found: f64, expected: f64) -> f64 {
+    ((found - expected) / expected).abs()
+}
+
+/// NIST Statistical Reference Datasets, univariate, Lew: certified to fifteen digits.
+#[test]
+fn nist_lew_is_reproduced() {
+    let data = include_str!("../../../tests/reference/nist-strd/lew.txt");
+    let lew = cascade(data.lines().filter_map(|line| line.trim().parse().ok()));
+    assert_eq!(lew.count(), 200);
+    assert!(relative(lew.mean().unwrap(), -177.435) < tolerance::CERTIFIED_DIGITS_RELATIVE);
+    let deviation = lew.variance().unwrap().sqrt();
+    assert!(relative(deviation, 277.332_168_044_316) < tolerance::CERTIFIED_DIGITS_RELATIVE);
+    let lag_one = lew.lag_one_autocorrelation(0).unwrap();
+    assert!(relative(lag_one, -0.307_304_800_605_679) < tolerance::CERTIFIED_DIGITS_RELATIVE);
+}
+
+/// NIST Statistical Reference Datasets, univariate, `NumAcc4`: a spread of 0.1 on 10⁷. Its data are not exact in binary, which costs eight
+/// of the sixteen digits: tolerances as in the reference's description.
+#[test]
+fn nist_numacc4_keeps_the_digits_that_the_data_have() {
+    let pairs = (0..500).flat_map(|_| [10_000_000.1, 10_000_000.3]);
+    let numacc4 = cascade(std::iter::once(10_000_000.2).chain(pairs));
+    assert_eq!(numacc4.count(), 1001);
+    assert!(relative(numacc4.mean().unwrap(), 10_000_000.2) < 1e-15);
+    assert!(relative(numacc4.variance().unwrap().sqrt(), 0.1) < 1e-8);
+    assert!(relative(numacc4.lag_one_autocorrelation(0).unwrap(), -0.999) < 1e-10);
+}
+
+#[test]
+fn each_level_holds_the_statistics_of_its_block_means() {
+    let mut generator = stream(3, 0);
+    let series = Correlation::Exponential { time: 3.7 }.sample_latent(1000, &mut generator);
+    let sums = cascade(series.iter().map(|z| 5.0 - 2.0 * z));
+    for level in 0..6 {
+        let length = 1 << level;
+        let means: Vec<f64> = series
+            .chunks_exact(length)
+            .map(|block| 5.0 - 2.0 * block.iter().sum::<f64>() / length as f64)
+            .collect();
+        assert_eq!(sums.levels()[level].count, means.len() as u64);
+        let expected = autocorrelation(&means, 1)[1];
+        let found = sums.lag_one_autocorrelation(level).unwrap();
+        assert!(
+            (found - expected).abs() < tolerance::SUMMATION_ORDER,
+            "level {level}: {found} against {expected}"
+        );
+    }
+}
+
+#[test]
+fn extremes_are_those_of_the_series() {
+    let sums = cascade([3.25, -8.5, 7.125, 0.0]);
+    assert_eq!((sums.minimum(), sums.maximum()), (Some(-8.5), Some(7.125)));
+    assert_eq!(Cascade::default().mean(), None);
+    assert_eq!(cascade([2.0]).variance(), None);
+    assert_eq!(cascade([2.0, 2.0, 2.0]).lag_one_autocorrelation(0), None);
+}
+
+#[test]
+fn blocks_number_256_to_512_and_hold_plain_means_whatever_the_length() {
+    for n in [512_usize, 513, 700, 1024, 1025, 5000, 70_001] {
+        let mut blocks = BlockMeans::new(2);
+        for i in 0..n {
+            blocks.push(&[i as f64, -0.5 * i as f64]);
+        }
+        let length = usize::try_from(blocks.block_length()).unwrap();
+        assert!(
+            (256..=512).contains(&blocks.n_blocks()),
+            "{n} samples gave {} blocks",
+            blocks.n_blocks()
+        );
+        assert_eq!(blocks.n_blocks(), n / length);
+        for (j, mean) in blocks.channel(1).iter().enumerate() {
+            let expected = -0.5 * ((j * length) as f64 + (length - 1) as f64 / 2.0);
+            assert!(
+                (mean - expected).abs() <= 1e-12 * expected.abs(),
+                "block {j} of {n}: {mean} against {expected}"
+            );
+        }
+    }
+}
+
+/// AR(1): statistical inefficiency (1 + ρ)/(1 − ρ) with ρ = exp(−1/τ).
+///
+/// An initial sequence takes positive noise for correlation and so leans upward (Geyer 1992), which is the safe side: errors grow, effective
+/// samples shrink. The claim tested is that it leans by less than a tenth and does not fall short.
+#[test]
+fn inefficiency_of_an_autoregression_is_met_or_exceeded_by_less_than_a_tenth() {
+    let mut generator = stream(17, 2);
+    for (time, n_samples) in [(0.8, 500), (0.8, 40_000), (4.0, 6_000), (23.0, 40_000)] {
+        let correlation = Correlation::Exponential { time };
+        let exact = correlation.statistical_inefficiency();
+        let runs = 200;
+        let (mut sum, mut squares) = (0.0, 0.0);
+        for _ in 0..runs {
+            let series = correlation.sample_latent(n_samples, &mut generator);
+            let mut blocks = BlockMeans::new(1);
+            let sums = cascade(series.iter().copied());
+            series.iter().for_each(|&z| blocks.push(&[z]));
+            let lag = MeanLag::of_block_means(&blocks.channel(0)).unwrap();
+            let ratio = lag.statistical_inefficiency(blocks.block_length(), sums.variance().unwrap()) / exact;
+            sum += ratio;
+            squares += ratio * ratio;
+        }
+        let mean = sum / f64::from(runs);
+        let error = ((squares / f64::from(runs) - mean * mean) / f64::from(runs)).sqrt();
+        let noise = tolerance::STANDARD_ERRORS * error;
+        assert!(
+            mean > 1.0 - noise && mean < 1.1 + noise,
+            "time {time}, {n_samples} samples: mean ratio {mean} ± {error}"
+        );
+    }
+}
+
+#[test]
+fn a_constant_series_has_no_correlation_to_speak_of() {
+    assert_eq!(MeanLag::of_block_means(&[4.1; 30]), None);
+    assert_eq!(MeanLag::of_block_means(&[4.1]), None);
+    assert_eq!(MeanLag::of_block_means(&[]), None);
+}
+
+#[test]
+fn batches_are_six_mean_lags_long_between_two_and_a_hundred() {
+    let lag = |mean_lag: f64| MeanLag {
+        mean_lag,
+        block_inefficiency: 2.0 * mean_lag + 1.0,
+        block_variance: 1.0,
+    };
+    assert_eq!(BatchRule::new(400, 100, &lag(0.0)).unwrap().n_batches, 100);
+    assert_eq!(BatchRule::new(400, 80, &lag(0.0)).unwrap().n_batches, 80);
+    assert_eq!(BatchRule::new(400, 100, &lag(5.0)).unwrap().n_batches, 13);
+    assert_eq!(BatchRule::new(400, 100, &lag(200.0)).unwrap().n_batches, 2);
+    assert_eq!(BatchRule::new(400, 1, &lag(0.0)), None);
+    // h(u) at u = 6 by hand: 1 − (1 − e⁻⁶)/6 = 0.833746…
+    let rule = BatchRule::new(300, 100, &lag(5.0)).unwrap();
+    assert_eq!(rule.n_batches, 10);
+    assert!(
+        (rule.correction - 0.833_746_458_696_06).abs() < 1e-12,
+        "{}",
+        rule.correction
+    );
+}
+
+#[test]
+fn batches_cover_every_group_once() {
+    for (n_groups, n_batches) in [(100, 7), (128, 100), (65, 2)] {
+        let rule = BatchRule {
+            n_batches,
+            correction: 1.0,
+        };
+        let covered: Vec<usize> = (0..n_batches).flat_map(|i| rule.groups_of(i, n_groups)).collect();
+        assert_eq!(covered, (0..n_groups).collect::<Vec<_>>());
+    }
+}
