@@ -7,6 +7,7 @@
 
 mod assemble;
 mod points;
+mod restrict;
 
 pub use assemble::{EnsembleError, WindowData};
 pub use points::Points;

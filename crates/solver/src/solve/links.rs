@@ -75,6 +75,21 @@ impl Links {
         }
     }
 
+    /// The links among the windows of one group, numbered as in the ensemble restricted to that group.
+    #[must_use]
+    pub fn within(&self, group: &[usize]) -> Self {
+        let place = |k: usize| group.binary_search(&k).ok();
+        let tree = self.tree.iter().filter_map(|link| {
+            Some(Link { windows: (place(link.windows.0)?, place(link.windows.1)?), ..*link })
+        });
+        Self {
+            tree: tree.collect(),
+            groups: vec![(0..group.len()).collect()],
+            start: group.iter().map(|&k| self.start[k]).collect(),
+            uncovered: Vec::new(),
+        }
+    }
+
     /// The link by which the whole tree hangs.
     #[must_use]
     pub fn weakest(&self) -> Option<&Link> {
