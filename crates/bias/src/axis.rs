@@ -40,10 +40,9 @@ impl Axis {
             return Err(AxisError::EmptyName);
         }
         match period {
-            Some(length) if !(length > 0.0 && length < f64::INFINITY) => Err(AxisError::Period {
-                axis: name,
-                found: length,
-            }),
+            Some(length) if !(length > 0.0 && length < f64::INFINITY) => {
+                Err(AxisError::Period { axis: name, found: length })
+            }
             _ => Ok(Self { name, unit, period }),
         }
     }
@@ -103,11 +102,7 @@ pub(crate) fn into_period(value: f64, lower: f64, period: f64) -> f64 {
     }
     let shifted = value - period * ((value - lower) / period).floor();
     // Rounding can leave the result a hair outside; both ends are images of each other.
-    if shifted < lower || shifted >= upper {
-        lower
-    } else {
-        shifted
-    }
+    if shifted < lower || shifted >= upper { lower } else { shifted }
 }
 
 impl fmt::Display for AxisError {

@@ -141,9 +141,7 @@ impl Bias {
     /// They stand in the order of the terms, in whatever period the terms were given in.
     #[must_use]
     pub fn breakpoints(&self, axis: usize) -> Vec<f64> {
-        self.along(axis)
-            .flat_map(|term| term.shape.breakpoints(&self.axes[axis]))
-            .collect()
+        self.along(axis).flat_map(|term| term.shape.breakpoints(&self.axes[axis])).collect()
     }
 
     /// A lower bound of the energy over the box of all positions between `lower` and `upper`, in kT.
@@ -182,14 +180,6 @@ impl Bias {
 
 #[cold]
 fn outside(term: &Term, position: f64) -> OutsideTable {
-    let (lower, upper) = term
-        .shape
-        .limited_domain()
-        .unwrap_or((f64::NEG_INFINITY, f64::INFINITY));
-    OutsideTable {
-        axis: term.axis,
-        position,
-        lower,
-        upper,
-    }
+    let (lower, upper) = term.shape.limited_domain().unwrap_or((f64::NEG_INFINITY, f64::INFINITY));
+    OutsideTable { axis: term.axis, position, lower, upper }
 }

@@ -97,12 +97,7 @@ pub enum BiasError {
 
 impl fmt::Display for OutsideTable {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let Self {
-            axis,
-            position,
-            lower,
-            upper,
-        } = self;
+        let Self { axis, position, lower, upper } = self;
         write!(
             formatter,
             "position {position} on axis {axis} lies outside the bias table, which covers {lower} to \
@@ -121,12 +116,7 @@ impl fmt::Display for BiasError {
                 formatter,
                 "`axis` of bias term {term} is {axis}, expected an index below {n_axes}, the number of axes"
             ),
-            Self::PeriodNotAllowed {
-                term,
-                axis,
-                shape,
-                advice,
-            } => write!(
+            Self::PeriodNotAllowed { term, axis, shape, advice } => write!(
                 formatter,
                 "bias term {term} is {shape}, which is ambiguous on axis `{axis}` because it has a \
                  period; {advice}"
@@ -136,22 +126,12 @@ impl fmt::Display for BiasError {
                 "bias term {term} is a periodic harmonic, but axis `{axis}` has no `period`; give the \
                  axis its period, or use a harmonic"
             ),
-            Self::FlatBottomTooWide {
-                term,
-                axis,
-                half_width,
-                period,
-            } => write!(
+            Self::FlatBottomTooWide { term, axis, half_width, period } => write!(
                 formatter,
                 "`half_width` of bias term {term} must be below half the period of axis `{axis}`, \
                  which is {period}; found {half_width}"
             ),
-            Self::TableForAnotherAxis {
-                term,
-                axis,
-                prepared_for,
-                period,
-            } => write!(
+            Self::TableForAnotherAxis { term, axis, prepared_for, period } => write!(
                 formatter,
                 "the table of bias term {term} was prepared for an axis with {}, but axis `{axis}` has \
                  {}; prepare it for the axis it acts on",
@@ -166,10 +146,9 @@ impl fmt::Display for BiasError {
                 "`force_constant` must be a positive, finite number, found {found}; leave the term out \
                  where no bias acted"
             ),
-            Self::HalfWidth { found } => write!(
-                formatter,
-                "`half_width` must be a finite number of 0 or more, found {found}"
-            ),
+            Self::HalfWidth { found } => {
+                write!(formatter, "`half_width` must be a finite number of 0 or more, found {found}")
+            }
             Self::Table(table) => table.fmt(formatter),
         }
     }

@@ -14,14 +14,8 @@ fn torsion() -> Axis {
 #[test]
 fn an_axis_keeps_what_it_was_given() {
     let axis = Axis::new("gap", PositionUnit::Angstrom, None).unwrap();
-    assert_eq!(
-        (axis.name(), axis.unit(), axis.period()),
-        ("gap", PositionUnit::Angstrom, None)
-    );
-    assert_eq!(
-        serde_json::to_string(&torsion()).unwrap(),
-        r#"{"name":"torsion","unit":"deg","period":360.0}"#
-    );
+    assert_eq!((axis.name(), axis.unit(), axis.period()), ("gap", PositionUnit::Angstrom, None));
+    assert_eq!(serde_json::to_string(&torsion()).unwrap(), r#"{"name":"torsion","unit":"deg","period":360.0}"#);
 }
 
 #[test]
@@ -29,19 +23,14 @@ fn blank_names_and_impossible_periods_are_refused() {
     for name in ["", "  ", "\t"] {
         let error = Axis::new(name, PositionUnit::None, None).unwrap_err();
         assert_eq!(error, AxisError::EmptyName);
-        assert_eq!(
-            error.to_string(),
-            "`name` of an axis is empty: expected a name to report it by"
-        );
+        assert_eq!(error.to_string(), "`name` of an axis is empty: expected a name to report it by");
     }
     for period in [0.0, -360.0, f64::NAN, f64::INFINITY] {
         let result = Axis::new("turn", PositionUnit::Degree, Some(period));
         assert!(matches!(result, Err(AxisError::Period { axis, .. }) if axis == "turn"));
     }
     assert_eq!(
-        Axis::new("turn", PositionUnit::Degree, Some(-7.5))
-            .unwrap_err()
-            .to_string(),
+        Axis::new("turn", PositionUnit::Degree, Some(-7.5)).unwrap_err().to_string(),
         "`period` of axis `turn` must be a positive, finite number, found -7.5; leave it out if the axis \
          does not close on itself"
     );
@@ -74,12 +63,7 @@ fn the_upper_end_of_a_period_wraps_to_its_lower_end() {
 
 /// A fixed seed: the same cases on every machine.
 fn config() -> Config {
-    Config {
-        cases: 1000,
-        failure_persistence: None,
-        rng_seed: RngSeed::Fixed(20_260_419),
-        ..Config::default()
-    }
+    Config { cases: 1000, failure_persistence: None, rng_seed: RngSeed::Fixed(20_260_419), ..Config::default() }
 }
 
 proptest! {

@@ -32,10 +32,7 @@ impl Case {
     fn bias(&self) -> Bias {
         let other = |name| Axis::new(name, PositionUnit::Nanometer, None).unwrap();
         let axes = [other("first"), self.axis.clone(), other("last")];
-        let term = Term {
-            axis: ALONG,
-            shape: self.shape.clone(),
-        };
+        let term = Term { axis: ALONG, shape: self.shape.clone() };
         Bias::new(Arc::from(axes), vec![term]).unwrap()
     }
 
@@ -50,10 +47,7 @@ impl Case {
 
     /// The distance from `position` to the nearest image of any of `marks`.
     fn distance(&self, position: f64, marks: &[f64]) -> f64 {
-        marks
-            .iter()
-            .map(|&mark| self.axis.displacement(position, mark).abs())
-            .fold(f64::INFINITY, f64::min)
+        marks.iter().map(|&mark| self.axis.displacement(position, mark).abs()).fold(f64::INFINITY, f64::min)
     }
 
     /// Breakpoints, and the rows of a table, at which the third derivative jumps.
@@ -87,9 +81,7 @@ fn curvature(bias: &Bias, position: f64) -> f64 {
 
 /// The largest of `|function|` over the stretch of a case.
 fn largest(case: &Case, function: impl Fn(f64) -> f64) -> f64 {
-    (0..=400)
-        .map(|step| function(case.at(f64::from(step) / 400.0)).abs())
-        .fold(0.0, f64::max)
+    (0..=400).map(|step| function(case.at(f64::from(step) / 400.0)).abs()).fold(0.0, f64::max)
 }
 
 /// Lengths over four powers of ten, so that no law rests on a scale near 1.
@@ -123,12 +115,7 @@ fn simple_straight() -> impl Strategy<Value = Case> {
                 3 => OneSidedHarmonic::new(Side::Below, center, k).unwrap().into(),
                 _ => FlatBottomed::new(center, width * length, k).unwrap().into(),
             };
-            Case {
-                axis: straight(),
-                shape,
-                lower: center - 1.3 * length,
-                upper: center + 1.7 * length,
-            }
+            Case { axis: straight(), shape, lower: center - 1.3 * length, upper: center + 1.7 * length }
         })
 }
 
@@ -143,12 +130,7 @@ fn simple_circular() -> impl Strategy<Value = Case> {
             } else {
                 PeriodicHarmonic::new(center, k).unwrap().into()
             };
-            Case {
-                axis: circular(period),
-                shape,
-                lower: -2.7 * period,
-                upper: 3.1 * period,
-            }
+            Case { axis: circular(period), shape, lower: -2.7 * period, upper: 3.1 * period }
         })
 }
 
@@ -162,17 +144,9 @@ enum Fit {
 }
 
 fn table() -> impl Strategy<Value = Case> {
-    let fit = prop_oneof![
-        Just(Fit::Straight),
-        Just(Fit::PartOfPeriod),
-        Just(Fit::FullPeriod),
-        Just(Fit::FullPeriodWithJump)
-    ];
-    let rule = prop_oneof![
-        Just(OutsideRule::Error),
-        Just(OutsideRule::Hold),
-        Just(OutsideRule::Extend)
-    ];
+    let fit =
+        prop_oneof![Just(Fit::Straight), Just(Fit::PartOfPeriod), Just(Fit::FullPeriod), Just(Fit::FullPeriodWithJump)];
+    let rule = prop_oneof![Just(OutsideRule::Error), Just(OutsideRule::Hold), Just(OutsideRule::Extend)];
     let interpolation = prop_oneof![Just(Interpolation::Linear), Just(Interpolation::Cubic)];
     let rows = prop::collection::vec((0.3..1.7f64, -6.0..9.0f64), 3..9);
     (fit, rule, interpolation, rows, length(), -3.1..3.1f64).prop_map(
@@ -207,12 +181,7 @@ fn table() -> impl Strategy<Value = Case> {
                 (false, Some(period)) => (ends.0 - 1.6 * period, ends.1 + 1.2 * period),
                 (false, None) => (ends.0 - 0.4 * length, ends.1 + 0.7 * length),
             };
-            Case {
-                axis,
-                shape: shape.into(),
-                lower,
-                upper,
-            }
+            Case { axis, shape: shape.into(), lower, upper }
         },
     )
 }
@@ -223,20 +192,13 @@ fn any_shape() -> impl Strategy<Value = Case> {
 
 /// A fixed seed: the same cases on every machine, some 50 or more of each shape and setting.
 fn config() -> Config {
-    Config {
-        cases: 1500,
-        failure_persistence: None,
-        rng_seed: RngSeed::Fixed(20_260_417),
-        ..Config::default()
-    }
+    Config { cases: 1500, failure_persistence: None, rng_seed: RngSeed::Fixed(20_260_417), ..Config::default() }
 }
 
 /// The least energy over a stretch by brute force: a fine grid with every mark on it, and a ternary search
 /// about the best grid point.
 fn sampled_minimum(case: &Case, bias: &Bias, lower: f64, upper: f64) -> f64 {
-    let mut positions: Vec<f64> = (0..=1000)
-        .map(|step| lower + (upper - lower) * f64::from(step) / 1000.0)
-        .collect();
+    let mut positions: Vec<f64> = (0..=1000).map(|step| lower + (upper - lower) * f64::from(step) / 1000.0).collect();
     for mark in case.marks() {
         let image = case.axis.wrap(mark, lower);
         // On an axis with a period a stretch of several periods holds equal minima in each.

@@ -37,16 +37,10 @@ fn parameters_that_are_not_finite_are_refused_by_name() {
             (FlatBottomed::new(number, 0.5, 2.0).unwrap_err(), "center"),
         ];
         for (error, name) in fields {
-            assert!(
-                matches!(error, BiasError::NotFinite { field, .. } if field == name),
-                "{error:?}"
-            );
+            assert!(matches!(error, BiasError::NotFinite { field, .. } if field == name), "{error:?}");
         }
     }
-    assert_eq!(
-        Linear::new(f64::INFINITY).unwrap_err().to_string(),
-        "`slope` must be a finite number, found inf"
-    );
+    assert_eq!(Linear::new(f64::INFINITY).unwrap_err().to_string(), "`slope` must be a finite number, found inf");
 }
 
 #[test]
@@ -121,26 +115,14 @@ fn a_flat_bottom_must_be_narrower_than_the_period() {
 
 #[test]
 fn terms_must_name_an_axis_that_exists() {
-    let term = Term {
-        axis: 2,
-        shape: Linear::new(1.5).unwrap().into(),
-    };
+    let term = Term { axis: 2, shape: Linear::new(1.5).unwrap().into() };
     let error = Bias::new(Arc::from([straight(), torsion()]), vec![term]).unwrap_err();
-    assert_eq!(
-        error.to_string(),
-        "`axis` of bias term 0 is 2, expected an index below 2, the number of axes"
-    );
+    assert_eq!(error.to_string(), "`axis` of bias term 0 is 2, expected an index below 2, the number of axes");
     assert_eq!(Bias::new(Arc::from([]), Vec::new()).unwrap_err(), BiasError::NoAxes);
 }
 
 fn table(axis: &Axis, positions: &[f64], energies: &[f64]) -> Result<Tabulated, BiasError> {
-    Tabulated::new(
-        axis,
-        positions.to_vec(),
-        energies.to_vec(),
-        Interpolation::Cubic,
-        OutsideRule::Hold,
-    )
+    Tabulated::new(axis, positions.to_vec(), energies.to_vec(), Interpolation::Cubic, OutsideRule::Hold)
 }
 
 #[test]
@@ -155,19 +137,10 @@ fn columns_of_a_table_must_be_equally_long_and_long_enough() {
         "a bias table with this interpolation needs at least 3 rows, found 2"
     );
     let linear = |positions: Vec<f64>, energies: Vec<f64>| {
-        Tabulated::new(
-            &straight(),
-            positions,
-            energies,
-            Interpolation::Linear,
-            OutsideRule::Hold,
-        )
+        Tabulated::new(&straight(), positions, energies, Interpolation::Linear, OutsideRule::Hold)
     };
     assert!(linear(vec![0.5, 1.5], vec![3.0, 4.0]).is_ok());
-    assert_eq!(
-        linear(vec![0.5], vec![3.0]).unwrap_err(),
-        TableError::TooShort { found: 1, needed: 2 }.into()
-    );
+    assert_eq!(linear(vec![0.5], vec![3.0]).unwrap_err(), TableError::TooShort { found: 1, needed: 2 }.into());
     assert!(linear(vec![], vec![]).is_err());
 }
 
@@ -175,28 +148,12 @@ fn columns_of_a_table_must_be_equally_long_and_long_enough() {
 fn numbers_of_a_table_must_be_finite() {
     for number in NO_NUMBERS {
         let error = table(&straight(), &[0.5, 1.5, number], &[3.0, 4.0, 7.0]).unwrap_err();
-        assert!(matches!(
-            error,
-            BiasError::Table(TableError::NotFinite {
-                row: 2,
-                column: "position",
-                ..
-            })
-        ));
+        assert!(matches!(error, BiasError::Table(TableError::NotFinite { row: 2, column: "position", .. })));
         let error = table(&straight(), &[0.5, 1.5, 2.5], &[3.0, number, 7.0]).unwrap_err();
-        assert!(matches!(
-            error,
-            BiasError::Table(TableError::NotFinite {
-                row: 1,
-                column: "energy",
-                ..
-            })
-        ));
+        assert!(matches!(error, BiasError::Table(TableError::NotFinite { row: 1, column: "energy", .. })));
     }
     assert_eq!(
-        table(&straight(), &[0.5, 1.5, 2.5], &[3.0, 4.0, f64::NAN])
-            .unwrap_err()
-            .to_string(),
+        table(&straight(), &[0.5, 1.5, 2.5], &[3.0, 4.0, f64::NAN]).unwrap_err().to_string(),
         "`energy` in row 3 of a bias table must be a finite number, found NaN"
     );
 }
@@ -205,17 +162,11 @@ fn numbers_of_a_table_must_be_finite() {
 fn positions_of_a_table_must_increase() {
     for second in [0.5, 0.25] {
         let error = table(&straight(), &[0.5, second, 2.5], &[3.0, 4.0, 5.0]).unwrap_err();
-        let expected = TableError::NotIncreasing {
-            row: 1,
-            previous: 0.5,
-            found: second,
-        };
+        let expected = TableError::NotIncreasing { row: 1, previous: 0.5, found: second };
         assert_eq!(error, expected.into());
     }
     assert_eq!(
-        table(&straight(), &[0.5, 2.5, 1.5], &[3.0, 4.0, 5.0])
-            .unwrap_err()
-            .to_string(),
+        table(&straight(), &[0.5, 2.5, 1.5], &[3.0, 4.0, 5.0]).unwrap_err().to_string(),
         "`position` in row 3 of a bias table must be above that of the row before, 2.5, found 1.5; sort \
          the table and keep each position once"
     );
@@ -235,10 +186,7 @@ fn a_table_must_not_go_around_more_than_once() {
 fn a_row_within_rounding_of_the_closing_one_is_refused() {
     // Moving the last row onto 180 would put it at, or below, the one before.
     let error = table(&torsion(), &[-180.0, 20.0, 180.0005, 180.001], &[3.0, 4.0, 5.0, 3.0]);
-    assert!(matches!(
-        error.unwrap_err(),
-        BiasError::Table(TableError::NotIncreasing { row: 3, .. })
-    ));
+    assert!(matches!(error.unwrap_err(), BiasError::Table(TableError::NotIncreasing { row: 3, .. })));
 }
 
 #[test]

@@ -20,10 +20,7 @@ fn torsion() -> Axis {
 }
 
 fn alone(axis: Axis, shape: impl Into<Shape>) -> Bias {
-    let term = Term {
-        axis: 0,
-        shape: shape.into(),
-    };
+    let term = Term { axis: 0, shape: shape.into() };
     Bias::new(Arc::from([axis]), vec![term]).unwrap()
 }
 

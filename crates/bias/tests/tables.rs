@@ -24,10 +24,7 @@ fn turn(period: f64) -> Axis {
 
 fn bias(axis: &Axis, positions: &[f64], energies: &[f64], interpolation: Interpolation, outside: OutsideRule) -> Bias {
     let table = Tabulated::new(axis, positions.to_vec(), energies.to_vec(), interpolation, outside);
-    let term = Term {
-        axis: 0,
-        shape: table.unwrap().into(),
-    };
+    let term = Term { axis: 0, shape: table.unwrap().into() };
     Bias::new(Arc::from([axis.clone()]), vec![term]).unwrap()
 }
 
@@ -49,13 +46,7 @@ fn curvature(bias: &Bias, position: f64) -> f64 {
 
 #[test]
 fn linear_interpolation_goes_straight_from_row_to_row() {
-    let bias = bias(
-        &straight(),
-        &POSITIONS,
-        &ENERGIES,
-        Interpolation::Linear,
-        OutsideRule::Error,
-    );
+    let bias = bias(&straight(), &POSITIONS, &ENERGIES, Interpolation::Linear, OutsideRule::Error);
     // A quarter of the way from (0.5, 2.25) to (2, 0.5): all exact in binary but the weights.
     let expected = 2.25 + 0.25 * (0.5 - 2.25);
     assert!((energy(&bias, 0.875) - expected).abs() < 1e-15);
@@ -67,13 +58,7 @@ fn linear_interpolation_goes_straight_from_row_to_row() {
 #[test]
 fn a_natural_spline_through_three_rows_has_its_closed_form() {
     // One equation is left for the middle row: 2 (h₀ + h₁) M₁ = 6 (s₁ − s₀).
-    let bias = bias(
-        &straight(),
-        &[0.4, 1.1, 2.7],
-        &[3.0, -2.0, 5.5],
-        Interpolation::Cubic,
-        OutsideRule::Extend,
-    );
+    let bias = bias(&straight(), &[0.4, 1.1, 2.7], &[3.0, -2.0, 5.5], Interpolation::Cubic, OutsideRule::Extend);
     let chords = [-5.0 / 0.7, 7.5 / 1.6];
     let middle = 3.0 * (chords[1] - chords[0]) / 2.3;
     assert!((curvature(&bias, 1.1) - middle).abs() < 1e-12 * middle);
@@ -88,13 +73,7 @@ fn a_natural_spline_through_three_rows_has_its_closed_form() {
 #[test]
 fn a_periodic_spline_through_three_rows_has_its_closed_form() {
     // Two distinct rows: (h₀ + h₁) (2 M₀ + M₁) = 6 (s₀ − s₁) and M₁ = −M₀.
-    let bias = bias(
-        &turn(2.5),
-        &[0.3, 1.2, 2.8],
-        &[1.0, 4.0, 1.0],
-        Interpolation::Cubic,
-        OutsideRule::Error,
-    );
+    let bias = bias(&turn(2.5), &[0.3, 1.2, 2.8], &[1.0, 4.0, 1.0], Interpolation::Cubic, OutsideRule::Error);
     let expected = 6.0 * (3.0 / 0.9 - -3.0 / 1.6) / 2.5;
     for (position, expected) in [(0.3, expected), (1.2, -expected), (2.8, expected), (-1.3, -expected)] {
         assert!((curvature(&bias, position) - expected).abs() < 1e-12 * expected.abs());
@@ -108,18 +87,10 @@ fn a_periodic_spline_follows_a_smooth_curve_to_fourth_order() {
     // smooth curve a cos x + b sin 2x of period 2π has nothing to add.
     let curve = |x: f64| 1.7 * x.cos() - 0.6 * (2.0 * x).sin();
     let error = |n: u32| {
-        let positions: Vec<f64> = (0..=n)
-            .map(|row| -PI + 2.0 * PI * f64::from(row) / f64::from(n))
-            .collect();
+        let positions: Vec<f64> = (0..=n).map(|row| -PI + 2.0 * PI * f64::from(row) / f64::from(n)).collect();
         let mut energies: Vec<f64> = positions.iter().map(|&x| curve(x)).collect();
         energies[n as usize] = energies[0];
-        let bias = bias(
-            &turn(2.0 * PI),
-            &positions,
-            &energies,
-            Interpolation::Cubic,
-            OutsideRule::Error,
-        );
+        let bias = bias(&turn(2.0 * PI), &positions, &energies, Interpolation::Cubic, OutsideRule::Error);
         (0..2000)
             .map(|step| {
                 let x = 0.0123 + f64::from(step) * 0.0041;
@@ -148,13 +119,7 @@ fn a_spline_has_the_same_shape_turned_around_the_circle() {
     };
     let build = |first: usize| {
         let (positions, energies) = rows(first);
-        bias(
-            &turn(4.4),
-            &positions,
-            &energies,
-            Interpolation::Cubic,
-            OutsideRule::Error,
-        )
+        bias(&turn(4.4), &positions, &energies, Interpolation::Cubic, OutsideRule::Error)
     };
     let (one, other) = (build(0), build(3));
     for step in 0..200 {
@@ -166,21 +131,10 @@ fn a_spline_has_the_same_shape_turned_around_the_circle() {
 
 #[test]
 fn outside_a_limited_table_there_is_no_energy() {
-    let bias = bias(
-        &straight(),
-        &POSITIONS,
-        &ENERGIES,
-        Interpolation::Cubic,
-        OutsideRule::Error,
-    );
+    let bias = bias(&straight(), &POSITIONS, &ENERGIES, Interpolation::Cubic, OutsideRule::Error);
     assert!(bias.has_limited_domain());
     for position in [-1.500_01, 2.750_01, 60.0, f64::INFINITY] {
-        let expected = OutsideTable {
-            axis: 0,
-            position,
-            lower: -1.5,
-            upper: 2.75,
-        };
+        let expected = OutsideTable { axis: 0, position, lower: -1.5, upper: 2.75 };
         assert_eq!(bias.energy(&[position]), Err(expected));
         assert_eq!(bias.gradient(&[position], &mut [0.0]), Err(expected));
         assert_eq!(bias.second_derivatives(&[position], &mut [0.0]), Err(expected));
@@ -197,13 +151,7 @@ fn outside_a_limited_table_there_is_no_energy() {
 
 #[test]
 fn a_held_table_keeps_the_energy_of_its_ends() {
-    let bias = bias(
-        &straight(),
-        &POSITIONS,
-        &ENERGIES,
-        Interpolation::Cubic,
-        OutsideRule::Hold,
-    );
+    let bias = bias(&straight(), &POSITIONS, &ENERGIES, Interpolation::Cubic, OutsideRule::Hold);
     assert!(!bias.has_limited_domain());
     for (position, expected) in [(-1.6, 4.0), (-900.0, 4.0), (2.8, 7.0), (900.0, 7.0)] {
         assert_eq!(energy(&bias, position).to_bits(), f64::to_bits(expected));
@@ -216,24 +164,12 @@ fn a_held_table_keeps_the_energy_of_its_ends() {
 #[test]
 fn in_the_gap_of_a_period_the_nearer_end_of_the_table_counts() {
     // The table covers 1 to 4 of a period of 5, so the gap from 4 to 6 is split at 5.
-    let held = bias(
-        &turn(5.0),
-        &[1.0, 2.5, 4.0],
-        &[3.0, -1.0, 8.0],
-        Interpolation::Linear,
-        OutsideRule::Hold,
-    );
+    let held = bias(&turn(5.0), &[1.0, 2.5, 4.0], &[3.0, -1.0, 8.0], Interpolation::Linear, OutsideRule::Hold);
     for (position, expected) in [(4.5, 8.0), (-0.25, 8.0), (5.25, 3.0), (0.5, 3.0), (-4.5, 3.0)] {
         assert_eq!(energy(&held, position).to_bits(), f64::to_bits(expected), "{position}");
     }
     assert_eq!(held.breakpoints(0), [1.0, 2.5, 4.0, 0.0]);
-    let extended = bias(
-        &turn(5.0),
-        &[1.0, 2.5, 4.0],
-        &[3.0, -1.0, 8.0],
-        Interpolation::Linear,
-        OutsideRule::Extend,
-    );
+    let extended = bias(&turn(5.0), &[1.0, 2.5, 4.0], &[3.0, -1.0, 8.0], Interpolation::Linear, OutsideRule::Extend);
     // Slopes of 6 at the upper end and -8/3 at the lower one.
     for (position, expected) in [(4.5, 11.0), (-0.25, 12.5), (5.25, 5.0)] {
         assert!((energy(&extended, position) - expected).abs() < 1e-14);
@@ -253,10 +189,7 @@ fn a_full_period_rounded_to_six_digits_closes_the_circle() {
         .unwrap();
         assert!(table.is_closed(), "{end}");
         assert!((table.range().1 - table.range().0 - 2.0 * PI).abs() < 1e-15);
-        let term = Term {
-            axis: 0,
-            shape: table.into(),
-        };
+        let term = Term { axis: 0, shape: table.into() };
         let bias = Bias::new(Arc::from([turn(2.0 * PI)]), vec![term]).unwrap();
         // Nothing is left of the circle that the table does not cover.
         for step in 0..3000 {
@@ -268,13 +201,7 @@ fn a_full_period_rounded_to_six_digits_closes_the_circle() {
 
 #[test]
 fn a_full_period_with_unequal_ends_jumps_where_it_begins() {
-    let bias = bias(
-        &turn(4.0),
-        &[-1.0, 0.5, 3.0],
-        &[2.0, 5.0, 9.0],
-        Interpolation::Cubic,
-        OutsideRule::Error,
-    );
+    let bias = bias(&turn(4.0), &[-1.0, 0.5, 3.0], &[2.0, 5.0, 9.0], Interpolation::Cubic, OutsideRule::Error);
     assert_eq!(bias.breakpoints(0), [-1.0]);
     assert!((energy(&bias, 3.0 - 1e-9) - 9.0).abs() < 1e-7);
     assert!((energy(&bias, 3.0) - 2.0).abs() < 1e-15);
@@ -284,13 +211,7 @@ fn a_full_period_with_unequal_ends_jumps_where_it_begins() {
 #[test]
 fn the_end_of_a_limited_table_is_inside_it_in_every_image() {
     let axis = turn(2.0 * PI);
-    let bias = bias(
-        &axis,
-        &[-1.3, 0.2, 1.1],
-        &[2.0, 0.5, 3.0],
-        Interpolation::Cubic,
-        OutsideRule::Error,
-    );
+    let bias = bias(&axis, &[-1.3, 0.2, 1.1], &[2.0, 0.5, 3.0], Interpolation::Cubic, OutsideRule::Error);
     for image in -60..60 {
         for end in [-1.3, 1.1] {
             let position = end + f64::from(image) * 2.0 * PI;
@@ -302,13 +223,7 @@ fn the_end_of_a_limited_table_is_inside_it_in_every_image() {
 
 #[test]
 fn a_lower_bound_leaves_out_what_a_limited_table_does_not_cover() {
-    let limited = bias(
-        &straight(),
-        &POSITIONS,
-        &ENERGIES,
-        Interpolation::Linear,
-        OutsideRule::Error,
-    );
+    let limited = bias(&straight(), &POSITIONS, &ENERGIES, Interpolation::Linear, OutsideRule::Error);
     let bound = |lower: f64, upper: f64| limited.lower_bound(&[lower], &[upper]);
     // Bounds are low by rounding at most.
     let close = |found: f64, expected: f64| found <= expected && found > expected - 1e-11;
@@ -333,22 +248,10 @@ fn a_lower_bound_sees_held_ends_and_extended_slopes_without_end() {
     // The upper end rises by 6.5 over 0.75.
     assert!(close(extended.lower_bound(&[3.5], &high), 13.5));
     assert!(close(extended.lower_bound(&low, &high), -1.5));
-    let level = bias(
-        &straight(),
-        &[0.5, 1.5, 2.5],
-        &[3.0, 3.0, 3.0],
-        Interpolation::Linear,
-        OutsideRule::Extend,
-    );
+    let level = bias(&straight(), &[0.5, 1.5, 2.5], &[3.0, 3.0, 3.0], Interpolation::Linear, OutsideRule::Extend);
     assert!(close(level.lower_bound(&low, &high), 3.0));
     assert!(close(level.lower_bound(&low, &[-40.0]), 3.0));
-    let falling = bias(
-        &straight(),
-        &[0.5, 1.5],
-        &[3.0, 1.0],
-        Interpolation::Linear,
-        OutsideRule::Extend,
-    );
+    let falling = bias(&straight(), &[0.5, 1.5], &[3.0, 1.0], Interpolation::Linear, OutsideRule::Extend);
     assert_eq!(falling.lower_bound(&low, &high), f64::NEG_INFINITY);
 }
 
@@ -357,13 +260,7 @@ fn a_lower_bound_holds_at_a_jump_however_its_image_is_rounded() {
     // The gap from 1.1 on is split at its middle, where the held energy falls from 3 to 2.
     let (first, last) = (-1.3, 1.1);
     for period in [2.0 * PI, 4.7, 10.0 / 3.0] {
-        let bias = bias(
-            &turn(period),
-            &[first, 0.2, last],
-            &[2.0, 4.5, 3.0],
-            Interpolation::Cubic,
-            OutsideRule::Hold,
-        );
+        let bias = bias(&turn(period), &[first, 0.2, last], &[2.0, 4.5, 3.0], Interpolation::Cubic, OutsideRule::Hold);
         for image in -60..60 {
             let jump = 0.5 * (first + last) + (f64::from(image) + 0.5) * period;
             for length in [0.01, 0.23, 0.31] {
@@ -401,12 +298,7 @@ fn a_table_serializes_as_its_rows_and_rules() {
 
 /// A fixed seed: the same cases on every machine.
 fn config() -> Config {
-    Config {
-        cases: 1000,
-        failure_persistence: None,
-        rng_seed: RngSeed::Fixed(20_260_420),
-        ..Config::default()
-    }
+    Config { cases: 1000, failure_persistence: None, rng_seed: RngSeed::Fixed(20_260_420), ..Config::default() }
 }
 
 proptest! {

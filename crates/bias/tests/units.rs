@@ -16,20 +16,14 @@ const ROUNDING: f64 = 1e-14;
 
 #[track_caller]
 fn assert_close(found: f64, expected: f64) {
-    assert!(
-        (found - expected).abs() <= ROUNDING * expected.abs(),
-        "expected {expected}, found {found}"
-    );
+    assert!((found - expected).abs() <= ROUNDING * expected.abs(), "expected {expected}, found {found}");
 }
 
 #[test]
 fn position_units_are_read_in_their_usual_spellings() {
     let spellings = [
         (PositionUnit::Nanometer, "nm NM nanometer nanometers nanometre"),
-        (
-            PositionUnit::Angstrom,
-            "Å \u{212b} A\u{30a} å A a angstrom Angstroms ångström",
-        ),
+        (PositionUnit::Angstrom, "Å \u{212b} A\u{30a} å A a angstrom Angstroms ångström"),
         (PositionUnit::Degree, "deg degree Degrees °"),
         (PositionUnit::Radian, "rad radian radians"),
         (PositionUnit::None, "none 1 unitless dimensionless"),
@@ -59,21 +53,8 @@ fn time_units_are_read_in_their_usual_spellings() {
 #[test]
 fn energy_units_are_read_in_their_usual_spellings() {
     let spellings: [(EnergyUnit, &[&str]); 4] = [
-        (
-            EnergyUnit::KilojoulePerMole,
-            &[
-                "kJ/mol",
-                "kj/mol",
-                "kJ mol^-1",
-                "kJ·mol⁻¹",
-                "kJ mol-1",
-                "kilojoule / mole",
-            ],
-        ),
-        (
-            EnergyUnit::KilocaloriePerMole,
-            &["kcal/mol", "Kcal/mol", "mol^-1 kcal", "kcal*mol**-1"],
-        ),
+        (EnergyUnit::KilojoulePerMole, &["kJ/mol", "kj/mol", "kJ mol^-1", "kJ·mol⁻¹", "kJ mol-1", "kilojoule / mole"]),
+        (EnergyUnit::KilocaloriePerMole, &["kcal/mol", "Kcal/mol", "mol^-1 kcal", "kcal*mol**-1"]),
         (EnergyUnit::Kt, &["kT", "kt", "kBT", "k_BT", "RT"]),
         (EnergyUnit::ElectronVolt, &["eV", "ev", "electronvolt"]),
     ];
@@ -108,10 +89,7 @@ fn force_constant_units_are_read_in_their_usual_spellings() {
     for (text, energy, per) in spellings {
         assert_eq!(text.parse(), Ok(ForceConstantUnit { energy, per }), "{text}");
     }
-    let force = ForceUnit {
-        energy: KilocaloriePerMole,
-        per: PositionUnit::Angstrom,
-    };
+    let force = ForceUnit { energy: KilocaloriePerMole, per: PositionUnit::Angstrom };
     for text in ["kcal/mol/Å", "kcal/(mol A)", "kcal mol-1 angstrom^-1"] {
         assert_eq!(text.parse(), Ok(force), "{text}");
     }
@@ -126,18 +104,7 @@ fn texts_that_are_no_unit_of_the_kind_are_refused() {
         assert!(text.parse::<TimeUnit>().is_err(), "{text}");
     }
     // Without "per mole" a kilojoule could mean a system's, a mole's or a particle's.
-    for text in [
-        "",
-        "kJ",
-        "kcal",
-        "J/mol",
-        "kJ*mol",
-        "kT/mol",
-        "eV/mol",
-        "kJ/mol/nm",
-        "kJ kcal/mol",
-        "kJ/kT",
-    ] {
+    for text in ["", "kJ", "kcal", "J/mol", "kJ*mol", "kT/mol", "eV/mol", "kJ/mol/nm", "kJ kcal/mol", "kJ/kT"] {
         assert!(text.parse::<EnergyUnit>().is_err(), "{text}");
     }
     for text in [
@@ -194,18 +161,9 @@ fn thermal_energy_follows_from_the_defining_constants() {
     let temperature = Temperature::new(kelvin).unwrap();
     let joule_per_particle = BOLTZMANN * kelvin;
     let joule_per_mole = joule_per_particle * AVOGADRO;
-    assert_close(
-        temperature.thermal_energy(EnergyUnit::KilojoulePerMole),
-        joule_per_mole / 1000.0,
-    );
-    assert_close(
-        temperature.thermal_energy(EnergyUnit::KilocaloriePerMole),
-        joule_per_mole / CALORIE / 1000.0,
-    );
-    assert_close(
-        temperature.thermal_energy(EnergyUnit::ElectronVolt),
-        joule_per_particle / ELEMENTARY_CHARGE,
-    );
+    assert_close(temperature.thermal_energy(EnergyUnit::KilojoulePerMole), joule_per_mole / 1000.0);
+    assert_close(temperature.thermal_energy(EnergyUnit::KilocaloriePerMole), joule_per_mole / CALORIE / 1000.0);
+    assert_close(temperature.thermal_energy(EnergyUnit::ElectronVolt), joule_per_particle / ELEMENTARY_CHARGE);
     assert_eq!(temperature.thermal_energy(EnergyUnit::Kt).to_bits(), 1f64.to_bits());
 }
 
@@ -230,10 +188,7 @@ fn a_force_per_nanometer_is_a_tenth_of_that_per_angstrom() {
     let temperature = Temperature::new(273.4).unwrap();
     let unit: ForceUnit = "kT/nm".parse().unwrap();
     assert_close(unit.to_reduced(37.0, PositionUnit::Angstrom, temperature).unwrap(), 3.7);
-    assert_close(
-        unit.from_reduced(3.7, PositionUnit::Angstrom, temperature).unwrap(),
-        37.0,
-    );
+    assert_close(unit.from_reduced(3.7, PositionUnit::Angstrom, temperature).unwrap(), 37.0);
 }
 
 #[test]
@@ -313,12 +268,7 @@ fn messages_name_what_was_found_and_what_is_allowed() {
 
 /// A fixed seed: the same cases on every machine.
 fn config() -> Config {
-    Config {
-        cases: 1000,
-        failure_persistence: None,
-        rng_seed: RngSeed::Fixed(20_260_418),
-        ..Config::default()
-    }
+    Config { cases: 1000, failure_persistence: None, rng_seed: RngSeed::Fixed(20_260_418), ..Config::default() }
 }
 
 proptest! {

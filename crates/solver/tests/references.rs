@@ -22,9 +22,7 @@ const COVARIANCE: &str = include_str!("../../../tests/reference/dense-likelihood
 fn dense_case(choice: &CellChoice) -> Ensemble {
     let axis = axis(None);
     // Its kinds are told by the numbers as well.
-    let numbers = ["harmonic", "linear", "none"]
-        .iter()
-        .fold(WINDOWS.to_owned(), |text, kind| text.replace(kind, "0"));
+    let numbers = ["harmonic", "linear", "none"].iter().fold(WINDOWS.to_owned(), |text, kind| text.replace(kind, "0"));
     let windows: Table = numbers.parse().unwrap();
     let column = |name: &str| windows.column(name).unwrap();
     let biases: Vec<Bias> = column("center_nm")
@@ -34,16 +32,10 @@ fn dense_case(choice: &CellChoice) -> Ensemble {
         .map(|((center, force_constant), slope)| {
             let mut terms = Vec::new();
             if force_constant > 0.0 {
-                terms.push(Term {
-                    axis: 0,
-                    shape: Harmonic::new(center, force_constant).unwrap().into(),
-                });
+                terms.push(Term { axis: 0, shape: Harmonic::new(center, force_constant).unwrap().into() });
             }
             if slope != 0.0 {
-                terms.push(Term {
-                    axis: 0,
-                    shape: Linear::new(slope).unwrap().into(),
-                });
+                terms.push(Term { axis: 0, shape: Linear::new(slope).unwrap().into() });
             }
             Bias::new(Arc::from([axis.clone()]), terms).unwrap()
         })
@@ -54,13 +46,7 @@ fn dense_case(choice: &CellChoice) -> Ensemble {
         #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "a window number")]
         series[row[0] as usize].push(row[1]);
     }
-    assemble(
-        &axis,
-        BinGrid::new(0, 0.0, 0.05, None).unwrap(),
-        &biases,
-        &series,
-        choice,
-    )
+    assemble(&axis, BinGrid::new(0, 0.0, 0.05, None).unwrap(), &biases, &series, choice)
 }
 
 /// Dense maximum likelihood by SciPy and, at 50 digits, by mpmath (tests/reference/dense-likelihood).
@@ -68,19 +54,8 @@ fn dense_case(choice: &CellChoice) -> Ensemble {
 fn free_energies_agree_with_a_dense_solution_by_general_purpose_libraries() {
     let expected = FREE_ENERGIES.parse::<Table>().unwrap().column("f_kT").unwrap();
     let ensemble = dense_case(&CellChoice::Samples);
-    for method in [
-        Method::Newton,
-        Method::TrustRegion,
-        Method::SelfConsistent,
-        Method::LimitedMemory,
-    ] {
-        let solution = solved(
-            &ensemble,
-            &SolveOptions {
-                method,
-                ..SolveOptions::default()
-            },
-        );
+    for method in [Method::Newton, Method::TrustRegion, Method::SelfConsistent, Method::LimitedMemory] {
+        let solution = solved(&ensemble, &SolveOptions { method, ..SolveOptions::default() });
         for (k, (found, expected)) in solution.free_energies.iter().zip(&expected).enumerate() {
             assert!(
                 (found - expected).abs() < tolerance::SOLVERS,
@@ -90,10 +65,7 @@ fn free_energies_agree_with_a_dense_solution_by_general_purpose_libraries() {
     }
     let on_cells = solved(&dense_case(&CellChoice::Lattice), &SolveOptions::default());
     for (found, expected) in on_cells.free_energies.iter().zip(&expected) {
-        assert!(
-            (found - expected).abs() < tolerance::CELLS,
-            "{found} against {expected}"
-        );
+        assert!((found - expected).abs() < tolerance::CELLS, "{found} against {expected}");
     }
 }
 
@@ -112,9 +84,6 @@ fn errors_of_free_energies_agree_with_the_asymptotic_formula_for_independent_sam
         let found = influence.uncertainty(&influence.deviations(&quantity)).standard_error;
         let row = &covariance.rows()[k];
         let expected = row[row.len() - ensemble.n_windows() + k].sqrt();
-        assert!(
-            (found / expected - 1.0).abs() < 0.28,
-            "window {k}: {found} against {expected}"
-        );
+        assert!((found / expected - 1.0).abs() < 0.28, "window {k}: {found} against {expected}");
     }
 }

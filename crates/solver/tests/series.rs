@@ -48,17 +48,12 @@ fn each_level_holds_the_statistics_of_its_block_means() {
     let sums = cascade(series.iter().map(|z| 5.0 - 2.0 * z));
     for level in 0..6 {
         let length = 1 << level;
-        let means: Vec<f64> = series
-            .chunks_exact(length)
-            .map(|block| 5.0 - 2.0 * block.iter().sum::<f64>() / length as f64)
-            .collect();
+        let means: Vec<f64> =
+            series.chunks_exact(length).map(|block| 5.0 - 2.0 * block.iter().sum::<f64>() / length as f64).collect();
         assert_eq!(sums.levels()[level].count, means.len() as u64);
         let expected = autocorrelation(&means, 1)[1];
         let found = sums.lag_one_autocorrelation(level).unwrap();
-        assert!(
-            (found - expected).abs() < tolerance::SUMMATION_ORDER,
-            "level {level}: {found} against {expected}"
-        );
+        assert!((found - expected).abs() < tolerance::SUMMATION_ORDER, "level {level}: {found} against {expected}");
     }
 }
 
@@ -79,18 +74,11 @@ fn blocks_number_256_to_512_and_hold_plain_means_whatever_the_length() {
             blocks.push(&[i as f64, -0.5 * i as f64]);
         }
         let length = usize::try_from(blocks.block_length()).unwrap();
-        assert!(
-            (256..=512).contains(&blocks.n_blocks()),
-            "{n} samples gave {} blocks",
-            blocks.n_blocks()
-        );
+        assert!((256..=512).contains(&blocks.n_blocks()), "{n} samples gave {} blocks", blocks.n_blocks());
         assert_eq!(blocks.n_blocks(), n / length);
         for (j, mean) in blocks.channel(1).iter().enumerate() {
             let expected = -0.5 * ((j * length) as f64 + (length - 1) as f64 / 2.0);
-            assert!(
-                (mean - expected).abs() <= 1e-12 * expected.abs(),
-                "block {j} of {n}: {mean} against {expected}"
-            );
+            assert!((mean - expected).abs() <= 1e-12 * expected.abs(), "block {j} of {n}: {mean} against {expected}");
         }
     }
 }
@@ -136,33 +124,31 @@ fn a_constant_series_has_no_correlation_to_speak_of() {
 
 #[test]
 fn batches_are_six_mean_lags_long_between_two_and_a_hundred() {
-    let lag = |mean_lag: f64| MeanLag {
-        mean_lag,
-        block_inefficiency: 2.0 * mean_lag + 1.0,
-        block_variance: 1.0,
-    };
-    assert_eq!(BatchRule::new(400, 100, &lag(0.0)).unwrap().n_batches, 100);
-    assert_eq!(BatchRule::new(400, 80, &lag(0.0)).unwrap().n_batches, 80);
-    assert_eq!(BatchRule::new(400, 100, &lag(5.0)).unwrap().n_batches, 13);
-    assert_eq!(BatchRule::new(400, 100, &lag(200.0)).unwrap().n_batches, 2);
-    assert_eq!(BatchRule::new(400, 1, &lag(0.0)), None);
-    // h(u) at u = 6 by hand: 1 − (1 − e⁻⁶)/6 = 0.833746…
-    let rule = BatchRule::new(300, 100, &lag(5.0)).unwrap();
-    assert_eq!(rule.n_batches, 10);
-    assert!(
-        (rule.correction - 0.833_746_458_696_06).abs() < 1e-12,
-        "{}",
-        rule.correction
-    );
+    let lag = |mean_lag: f64| MeanLag { mean_lag, block_inefficiency: 2.0 * mean_lag + 1.0, block_variance: 1.0 };
+    assert_eq!(BatchRule::new(400, 8, 100, &lag(0.0)).unwrap().n_batches, 100);
+    assert_eq!(BatchRule::new(400, 8, 80, &lag(0.0)).unwrap().n_batches, 80);
+    assert_eq!(BatchRule::new(400, 8, 100, &lag(5.0)).unwrap().n_batches, 13);
+    assert_eq!(BatchRule::new(400, 8, 100, &lag(200.0)).unwrap().n_batches, 2);
+    assert_eq!(BatchRule::new(400, 8, 1, &lag(0.0)), None);
+}
+
+#[test]
+fn short_batches_show_the_part_of_the_variance_that_an_exponential_correlation_leaves_them() {
+    let lag = MeanLag { mean_lag: 5.0, block_inefficiency: 11.0, block_variance: 1.0 };
+    let rule = BatchRule::new(300, 4, 100, &lag).unwrap();
+    assert_eq!((rule.n_batches, rule.mean_lag), (10, 20.0));
+    // h(u) = 1 − (1 − e⁻ᵘ)/u by hand: u = 6 and u = 3.
+    let (six, three) = (0.833_746_458_696_111_1, 0.683_262_356_122_621_3);
+    assert!((rule.shown_part(&[120.0; 10]) - six).abs() < tolerance::HANDBOOK_DIGITS);
+    assert!((rule.shown_part(&[120.0, 60.0]) - f64::midpoint(six, three)).abs() < tolerance::HANDBOOK_DIGITS);
+    let independent = BatchRule { n_batches: 10, mean_lag: 0.0 };
+    assert!((independent.shown_part(&[3.0, 4.0]) - 1.0).abs() < f64::EPSILON);
 }
 
 #[test]
 fn batches_cover_every_group_once() {
     for (n_groups, n_batches) in [(100, 7), (128, 100), (65, 2)] {
-        let rule = BatchRule {
-            n_batches,
-            correction: 1.0,
-        };
+        let rule = BatchRule { n_batches, mean_lag: 0.0 };
         let covered: Vec<usize> = (0..n_batches).flat_map(|i| rule.groups_of(i, n_groups)).collect();
         assert_eq!(covered, (0..n_groups).collect::<Vec<_>>());
     }

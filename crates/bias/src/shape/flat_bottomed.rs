@@ -55,11 +55,7 @@ impl FlatBottomed {
     fn excess(&self, axis: &Axis, position: f64) -> f64 {
         let displacement = axis.displacement(position, self.center);
         let excess = displacement.abs() - self.half_width;
-        if excess <= 0.0 {
-            0.0
-        } else {
-            excess.copysign(displacement)
-        }
+        if excess <= 0.0 { 0.0 } else { excess.copysign(displacement) }
     }
 
     pub(super) fn energy(&self, axis: &Axis, position: f64) -> f64 {
@@ -72,11 +68,7 @@ impl FlatBottomed {
     }
 
     pub(super) fn curvature(&self, axis: &Axis, position: f64) -> f64 {
-        if self.excess(axis, position) == 0.0 {
-            0.0
-        } else {
-            self.force_constant
-        }
+        if self.excess(axis, position) == 0.0 { 0.0 } else { self.force_constant }
     }
 
     pub(super) fn minimum(&self, axis: &Axis, lower: f64, upper: f64) -> f64 {

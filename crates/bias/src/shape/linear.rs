@@ -19,9 +19,7 @@ impl Linear {
     /// # Errors
     /// [`BiasError`] unless `slope` is finite.
     pub fn new(slope: f64) -> Result<Self, BiasError> {
-        Ok(Self {
-            slope: parameters::finite("slope", slope)?,
-        })
+        Ok(Self { slope: parameters::finite("slope", slope)? })
     }
 
     /// The slope of the energy, in kT per axis unit.

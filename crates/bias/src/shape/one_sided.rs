@@ -76,11 +76,7 @@ impl OneSidedHarmonic {
     }
 
     pub(super) fn curvature(&self, position: f64) -> f64 {
-        if self.excess(position) == 0.0 {
-            0.0
-        } else {
-            self.force_constant
-        }
+        if self.excess(position) == 0.0 { 0.0 } else { self.force_constant }
     }
 
     pub(super) fn minimum(&self, lower: f64, upper: f64) -> f64 {

@@ -4,20 +4,12 @@ use crate::{Axis, BiasError};
 
 /// `value`, if it is finite.
 pub(super) fn finite(field: &'static str, value: f64) -> Result<f64, BiasError> {
-    if value.is_finite() {
-        Ok(value)
-    } else {
-        Err(BiasError::NotFinite { field, found: value })
-    }
+    if value.is_finite() { Ok(value) } else { Err(BiasError::NotFinite { field, found: value }) }
 }
 
 /// `value`, if it can be a force constant: positive and finite.
 pub(super) fn force_constant(value: f64) -> Result<f64, BiasError> {
-    if value > 0.0 && value < f64::INFINITY {
-        Ok(value)
-    } else {
-        Err(BiasError::ForceConstant { found: value })
-    }
+    if value > 0.0 && value < f64::INFINITY { Ok(value) } else { Err(BiasError::ForceConstant { found: value }) }
 }
 
 /// The shortest distance from any image of `center` to the stretch from `lower` to `upper`.

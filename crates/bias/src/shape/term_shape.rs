@@ -27,26 +27,18 @@ pub enum Shape {
 impl Shape {
     /// Whether the shape, as term number `term`, may act on `axis`.
     pub(crate) fn check_axis(&self, term: usize, axis: &Axis) -> Result<(), BiasError> {
-        let not_allowed = |shape, advice| BiasError::PeriodNotAllowed {
-            term,
-            axis: axis.name().to_owned(),
-            shape,
-            advice,
-        };
+        let not_allowed =
+            |shape, advice| BiasError::PeriodNotAllowed { term, axis: axis.name().to_owned(), shape, advice };
         match (self, axis.period()) {
             (Self::Harmonic(_), Some(_)) => Err(not_allowed("a harmonic", "use a periodic harmonic")),
-            (Self::Linear(_), Some(_)) => Err(not_allowed(
-                "a constant force",
-                "give the energy as a table if it closes on itself",
-            )),
+            (Self::Linear(_), Some(_)) => {
+                Err(not_allowed("a constant force", "give the energy as a table if it closes on itself"))
+            }
             (Self::OneSidedHarmonic(_), Some(_)) => Err(not_allowed(
                 "a one-sided harmonic",
                 "use a flat-bottomed harmonic, which has a wall on either side",
             )),
-            (Self::PeriodicHarmonic(_), None) => Err(BiasError::PeriodNeeded {
-                term,
-                axis: axis.name().to_owned(),
-            }),
+            (Self::PeriodicHarmonic(_), None) => Err(BiasError::PeriodNeeded { term, axis: axis.name().to_owned() }),
             (Self::FlatBottomed(shape), Some(period)) if shape.half_width() >= 0.5 * period => {
                 Err(BiasError::FlatBottomTooWide {
                     term,
@@ -173,11 +165,4 @@ macro_rules! into_shape {
     };
 }
 
-into_shape!(
-    Harmonic,
-    PeriodicHarmonic,
-    Linear,
-    OneSidedHarmonic,
-    FlatBottomed,
-    Tabulated
-);
+into_shape!(Harmonic, PeriodicHarmonic, Linear, OneSidedHarmonic, FlatBottomed, Tabulated);

@@ -42,13 +42,7 @@ mod tests {
         assert_eq!(bits(AVOGADRO), bits(exact(AVOGADRO_DIGITS, 15)));
         assert_eq!(bits(ELEMENTARY_CHARGE), bits(exact(CHARGE_DIGITS, -28)));
         // J to kJ takes off three more powers of ten.
-        assert_eq!(
-            bits(GAS_CONSTANT),
-            bits(exact(BOLTZMANN_DIGITS * AVOGADRO_DIGITS, -29 + 15 - 3))
-        );
-        assert_eq!(
-            bits(FARADAY),
-            bits(exact(CHARGE_DIGITS * AVOGADRO_DIGITS, -28 + 15 - 3))
-        );
+        assert_eq!(bits(GAS_CONSTANT), bits(exact(BOLTZMANN_DIGITS * AVOGADRO_DIGITS, -29 + 15 - 3)));
+        assert_eq!(bits(FARADAY), bits(exact(CHARGE_DIGITS * AVOGADRO_DIGITS, -28 + 15 - 3)));
     }
 }

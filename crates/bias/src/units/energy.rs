@@ -22,12 +22,7 @@ pub enum EnergyUnit {
 
 impl EnergyUnit {
     /// Every unit, in the order in which messages list them.
-    pub const ALL: [Self; 4] = [
-        Self::KilojoulePerMole,
-        Self::KilocaloriePerMole,
-        Self::Kt,
-        Self::ElectronVolt,
-    ];
+    pub const ALL: [Self; 4] = [Self::KilojoulePerMole, Self::KilocaloriePerMole, Self::Kt, Self::ElectronVolt];
 
     /// The symbol, which is also a spelling that parses.
     #[must_use]

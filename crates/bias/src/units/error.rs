@@ -36,11 +36,9 @@ pub enum UnitError {
 impl fmt::Display for UnitError {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            Self::Unknown {
-                quantity,
-                found,
-                allowed,
-            } => write!(formatter, "unknown {quantity} `{found}`: expected {allowed}"),
+            Self::Unknown { quantity, found, allowed } => {
+                write!(formatter, "unknown {quantity} `{found}`: expected {allowed}")
+            }
             Self::Incompatible { from, to } => write!(
                 formatter,
                 "`{from}` does not convert to `{to}`: expected two lengths, two angles or two pure \
@@ -48,10 +46,9 @@ impl fmt::Display for UnitError {
                 from.dimension(),
                 to.dimension()
             ),
-            Self::Temperature { found } => write!(
-                formatter,
-                "`temperature` must be a positive, finite number of kelvin, found {found}"
-            ),
+            Self::Temperature { found } => {
+                write!(formatter, "`temperature` must be a positive, finite number of kelvin, found {found}")
+            }
         }
     }
 }

@@ -118,10 +118,7 @@ impl FromStr for ForceUnit {
 
     fn from_str(text: &str) -> Result<Self, UnitError> {
         match compound::energy_and_position(text) {
-            Some((energy, PositionUnit::None, _)) => Ok(Self {
-                energy,
-                per: PositionUnit::None,
-            }),
+            Some((energy, PositionUnit::None, _)) => Ok(Self { energy, per: PositionUnit::None }),
             Some((energy, per, -1)) => Ok(Self { energy, per }),
             _ => Err(UnitError::Unknown {
                 quantity: "force unit",
@@ -139,10 +136,7 @@ impl FromStr for ForceConstantUnit {
 
     fn from_str(text: &str) -> Result<Self, UnitError> {
         match compound::energy_and_position(text) {
-            Some((energy, PositionUnit::None, _)) => Ok(Self {
-                energy,
-                per: PositionUnit::None,
-            }),
+            Some((energy, PositionUnit::None, _)) => Ok(Self { energy, per: PositionUnit::None }),
             Some((energy, per, -2)) => Ok(Self { energy, per }),
             _ => Err(UnitError::Unknown {
                 quantity: "force constant unit",

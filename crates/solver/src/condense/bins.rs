@@ -82,12 +82,7 @@ impl BinGrid {
                 Some(n_bins as u32)
             }
         };
-        Ok(Self {
-            axis,
-            origin,
-            width,
-            n_bins_in_period,
-        })
+        Ok(Self { axis, origin, width, n_bins_in_period })
     }
 
     /// Number of the axis (from 0) that the bins divide.
@@ -114,46 +109,56 @@ impl BinGrid {
         self.origin + i as f64 * self.width
     }
 
+    /// Middle of bin `i` in the axis' unit.
+    #[must_use]
+    pub fn center(&self, i: i64) -> f64 {
+        f64::midpoint(self.lower_edge(i), self.lower_edge(i + 1))
+    }
+
     /// Number of the bin that holds `x`; `None` if `x` is not finite or lies more than four million bins from the origin.
     #[must_use]
     pub fn bin_of(&self, x: f64) -> Option<i64> {
         self.fixed_point(x).map(|fixed| fixed >> FRACTION_BITS)
     }
 
-    /// Number of bins that the stretch from `from` to `to` touches, at least 1; an end that lies on an edge (within 1e-9 of a bin) does not
-    /// touch the bin beyond it.
+    /// The bins that the stretch from `from` to `to` touches: the first one, not wrapped, and how many, at least 1.
+    ///
+    /// An end that lies on an edge (within 1e-9 of a bin) does not touch the bin beyond it. `None` unless `from < to`, both in reach, and on
+    /// an axis with a period no more than that apart.
     #[must_use]
-    pub fn n_bins_touched(&self, from: f64, to: f64) -> i64 {
-        let start = (from - self.origin) / self.width;
-        let end = (to - self.origin) / self.width;
-        let bins = ((end - 1e-9).ceil() - (start + 1e-9).floor()).clamp(1.0, MOST_BINS);
-        #[expect(clippy::cast_possible_truncation, reason = "clamped to 1..=2^22")]
-        {
-            bins as i64
-        }
-    }
-
-    /// Position as a fixed-point number of bins from the origin, wrapped into the first period.
-    pub(super) fn fixed_point(&self, x: f64) -> Option<i64> {
-        let mut bins = (x - self.origin) / self.width;
-        if let Some(n_bins) = self.n_bins_in_period {
-            bins = bins.rem_euclid(f64::from(n_bins));
-            // rem_euclid may round up to the period itself.
-            if bins >= f64::from(n_bins) {
-                bins = 0.0;
-            }
-        }
-        if !(-MOST_BINS..MOST_BINS).contains(&bins) {
+    pub fn touched_by(&self, from: f64, to: f64) -> Option<(i64, u32)> {
+        let start = ((from - self.origin) / self.width + 1e-9).floor();
+        let end = ((to - self.origin) / self.width - 1e-9).ceil();
+        let n_bins = (end - start).max(1.0);
+        let most = self.n_bins_in_period.map_or(MOST_BINS, f64::from);
+        if !(from < to && start.abs() <= MOST_BINS && n_bins <= most) {
             return None;
         }
         #[expect(
             clippy::cast_possible_truncation,
-            reason = "|bins| <= 2^22, so the product stays below 2^62"
+            clippy::cast_sign_loss,
+            reason = "both are at most 2^22, the count at least 1"
         )]
-        Some((bins * (1_u64 << FRACTION_BITS) as f64).floor() as i64)
+        Some((start as i64, n_bins as u32))
     }
 
-    /// Position of the middle of a fixed-point step (the mean of `count` of them whose sum is `sum`), in the axis' unit.
+    /// Position as a fixed-point number of bins from the origin, wrapped into the first period.
+    ///
+    /// Rounded to the nearest step, so that a decimal number on an edge falls into the bin above it although neither is exact in binary.
+    pub(super) fn fixed_point(&self, x: f64) -> Option<i64> {
+        let bins = (x - self.origin) / self.width;
+        // Wrapped once before the conversion, so that far images stay in reach, and once after it, where rounding may reach the period.
+        let period = self.n_bins_in_period.map(f64::from);
+        let bins = period.map_or(bins, |period| bins.rem_euclid(period));
+        if !(-MOST_BINS..=MOST_BINS).contains(&bins) {
+            return None;
+        }
+        #[expect(clippy::cast_possible_truncation, reason = "|bins| <= 2^22, so the product stays within 2^62")]
+        let fixed = (bins * (1_u64 << FRACTION_BITS) as f64).round() as i64;
+        Some(self.n_bins_in_period.map_or(fixed, |n_bins| fixed.rem_euclid(i64::from(n_bins) << FRACTION_BITS)))
+    }
+
+    /// Mean of `count` fixed-point positions whose sum is `sum`, in the axis' unit.
     pub(crate) fn position_of(&self, sum: i128, count: u64) -> f64 {
         // Whole part and remainder apart, so that no digit is lost in the conversion of a large sum.
         let count_wide = i128::from(count);
@@ -163,7 +168,7 @@ impl BinGrid {
             clippy::cast_precision_loss,
             reason = "the mean is below 2^62 and its low bits lie beyond the digits of a position"
         )]
-        let fixed = whole as f64 + rest as f64 / count as f64 + 0.5;
+        let fixed = whole as f64 + rest as f64 / count as f64;
         self.origin + self.width * (fixed / (1_u64 << FRACTION_BITS) as f64)
     }
 }

@@ -1,7 +1,8 @@
 //! The cells that one run has visited.
 
-use super::lattice::CellKey;
+use super::lattice::{CellKey, CellLattice};
 use serde::Serialize;
+use std::sync::Arc;
 
 /// One visited cell of a lattice.
 #[derive(Debug, Clone, PartialEq, Serialize)]
@@ -19,8 +20,8 @@ pub struct LatticeCell {
 pub enum Cells {
     /// Cells of a lattice along one axis.
     Lattice {
-        /// Times that each bin was halved.
-        level: u32,
+        /// Which lattice.
+        lattice: Arc<CellLattice>,
         /// The cells, increasing in key.
         cells: Vec<LatticeCell>,
     },
@@ -49,19 +50,17 @@ impl Cells {
         self.len() == 0
     }
 
-    /// The same samples on cells halved only `level` times, and the new number of each old cell.
+    /// The same samples on cells halved at most `level` times, and the new number of each old cell.
     ///
-    /// Unchanged where the cells are as coarse already, or are samples.
+    /// Unchanged where the cells are as coarse or coarser already, or are samples.
     pub(super) fn coarsened(self, level: u32) -> (Self, Option<Vec<u32>>) {
         match self {
-            Self::Lattice { level: finer, cells } if finer > level => {
+            Self::Lattice { lattice, cells } if lattice.level() > level => {
+                let finer = lattice.level();
                 let mut merged: Vec<LatticeCell> = Vec::new();
                 let mut new_number = Vec::with_capacity(cells.len());
                 for cell in cells {
-                    let key = CellKey {
-                        lattice: cell.key.lattice >> (finer - level),
-                        piece: cell.key.piece,
-                    };
+                    let key = CellKey { lattice: cell.key.lattice >> (finer - level), piece: cell.key.piece };
                     match merged.last_mut() {
                         Some(last) if last.key == key => {
                             last.count += cell.count;
@@ -71,7 +70,7 @@ impl Cells {
                     }
                     new_number.push(u32::try_from(merged.len() - 1).unwrap_or(u32::MAX));
                 }
-                (Self::Lattice { level, cells: merged }, Some(new_number))
+                (Self::Lattice { lattice: Arc::new(lattice.at_level(level)), cells: merged }, Some(new_number))
             }
             as_it_is => (as_it_is, None),
         }

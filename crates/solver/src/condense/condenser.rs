@@ -10,19 +10,42 @@ use serde::Serialize;
 use spandrel_bias::{Axis, Bias, OutsideTable};
 use std::collections::HashMap;
 use std::fmt;
+use std::sync::Arc;
 
 /// What a cell is.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub enum CellScheme {
     /// Fine cells along a single axis: the normal case.
-    Lattice(CellLattice),
+    Lattice(Arc<CellLattice>),
     /// One cell a sample: for several axes, and where cells would not pay.
     Samples(BinGrid),
 }
 
-/// Why a sample cannot be taken in.
+impl CellScheme {
+    /// Fine cells on the given lattice.
+    #[must_use]
+    pub fn lattice(lattice: CellLattice) -> Self {
+        Self::Lattice(Arc::new(lattice))
+    }
+
+    /// The output bins.
+    #[must_use]
+    pub fn bins(&self) -> &BinGrid {
+        match self {
+            Self::Lattice(lattice) => lattice.bins(),
+            Self::Samples(bins) => bins,
+        }
+    }
+}
+
+/// Why a sample, or any at all, cannot be taken in.
 #[derive(Debug, Clone, PartialEq)]
 pub enum CondenseError {
+    /// The bins are along an axis that does not exist, a lattice was asked for with several axes, or the bias has other axes.
+    Axes {
+        /// Number of axes.
+        n_axes: usize,
+    },
     /// The window's own tabulated bias does not reach the sample.
     OutsideTable(OutsideTable),
     /// The position is more than four million bins from the origin.
@@ -39,15 +62,17 @@ pub enum CondenseError {
 impl fmt::Display for CondenseError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
+            Self::Axes { n_axes } => {
+                write!(f, "bins, cells and bias must be along the same {n_axes} axes, and a lattice needs a single one")
+            }
             Self::OutsideTable(inner) => inner.fmt(f),
             Self::TooFar { position, .. } => write!(
                 f,
                 "position {position} lies more than four million output bins from their origin; check its unit, or widen the bins"
             ),
-            Self::TooMany => write!(
-                f,
-                "more than 4294967295 cells in one run; widen the cells or take a larger stride"
-            ),
+            Self::TooMany => {
+                write!(f, "more than 4294967295 cells in one run; widen the cells or take a larger stride")
+            }
         }
     }
 }
@@ -78,10 +103,16 @@ pub struct Condenser<'a> {
 
 impl<'a> Condenser<'a> {
     /// An empty run of a window with the given reduced bias (kT).
-    #[must_use]
-    pub fn new(scheme: &'a CellScheme, axes: &'a [Axis], bias: &'a Bias) -> Self {
+    ///
+    /// # Errors
+    /// Axes that do not fit together.
+    pub fn new(scheme: &'a CellScheme, axes: &'a [Axis], bias: &'a Bias) -> Result<Self, CondenseError> {
         let n_axes = axes.len();
-        Self {
+        let one_lattice = matches!(scheme, CellScheme::Samples(_)) || n_axes == 1;
+        if !(one_lattice && scheme.bins().axis() < n_axes && bias.n_axes() == n_axes) {
+            return Err(CondenseError::Axes { n_axes });
+        }
+        Ok(Self {
             scheme,
             axes,
             bias,
@@ -96,7 +127,7 @@ impl<'a> Condenser<'a> {
             squared_slopes: vec![0.0; n_axes],
             row: vec![0.0; n_axes + 1],
             gradient: vec![0.0; n_axes],
-        }
+        })
     }
 
     /// Takes one sample in: a finite position on every axis, in the axes' units. On an axis with a period any image will do.
@@ -105,19 +136,13 @@ impl<'a> Condenser<'a> {
     /// A position outside the window's own table, or too far from the output bins. The sample is then not counted.
     pub fn push(&mut self, position: &[f64]) -> Result<(), CondenseError> {
         let energy = self.bias.energy(position).map_err(CondenseError::OutsideTable)?;
-        self.bias
-            .gradient(position, &mut self.gradient)
-            .map_err(CondenseError::OutsideTable)?;
+        self.bias.gradient(position, &mut self.gradient).map_err(CondenseError::OutsideTable)?;
         let cell = self.cell_of(position)?;
         if self.n_samples == 0 {
             self.set_reference(position);
         }
         for (i, (axis, &x)) in self.axes.iter().zip(position).enumerate() {
-            self.row[i] = if axis.period().is_some() {
-                axis.displacement(x, self.reference[i])
-            } else {
-                x
-            };
+            self.row[i] = if axis.period().is_some() { axis.displacement(x, self.reference[i]) } else { x };
             self.squared_slopes[i] += self.gradient[i] * self.gradient[i];
         }
         self.row[self.axes.len()] = energy;
@@ -147,11 +172,7 @@ impl<'a> Condenser<'a> {
                 let next = u32::try_from(self.lattice_cells.len()).map_err(|_| CondenseError::TooMany)?;
                 let number = *self.numbers.entry(key).or_insert(next);
                 if number == next {
-                    self.lattice_cells.push(LatticeCell {
-                        key,
-                        count: 0,
-                        position_sum: 0,
-                    });
+                    self.lattice_cells.push(LatticeCell { key, count: 0, position_sum: 0 });
                 }
                 let cell = &mut self.lattice_cells[number as usize];
                 cell.count += 1;
@@ -175,13 +196,7 @@ impl<'a> Condenser<'a> {
         let n_axes = self.axes.len();
         let groups = self.groups.finish();
         let (cells, groups) = match self.scheme {
-            CellScheme::Samples(_) => (
-                Cells::Samples {
-                    positions: self.sample_positions,
-                    n_axes,
-                },
-                groups,
-            ),
+            CellScheme::Samples(_) => (Cells::Samples { positions: self.sample_positions, n_axes }, groups),
             CellScheme::Lattice(lattice) => {
                 let mut order: Vec<usize> = (0..self.lattice_cells.len()).collect();
                 order.sort_unstable_by_key(|&i| self.lattice_cells[i].key);
@@ -191,13 +206,7 @@ impl<'a> Condenser<'a> {
                 }
                 let cells = order.iter().map(|&i| self.lattice_cells[i].clone()).collect();
                 let groups = groups.iter().map(|group| group.renumbered(&new_number)).collect();
-                (
-                    Cells::Lattice {
-                        level: lattice.level(),
-                        cells,
-                    },
-                    groups,
-                )
+                (Cells::Lattice { lattice: Arc::clone(lattice), cells }, groups)
             }
         };
         let n = self.n_samples.max(1) as f64;

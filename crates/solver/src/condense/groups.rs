@@ -26,16 +26,10 @@ impl Group {
     /// The same counts under new cell numbers, `new_number[old]`; several old cells may share a new one.
     #[must_use]
     pub fn renumbered(&self, new_number: &[u32]) -> Self {
-        let mut entries: Vec<(u32, u32)> = self
-            .entries
-            .iter()
-            .map(|&(cell, count)| (new_number[cell as usize], count))
-            .collect();
+        let mut entries: Vec<(u32, u32)> =
+            self.entries.iter().map(|&(cell, count)| (new_number[cell as usize], count)).collect();
         entries.sort_unstable();
-        Self {
-            n_samples: self.n_samples,
-            entries: add_up_equal(&entries),
-        }
+        Self { n_samples: self.n_samples, entries: add_up_equal(&entries) }
     }
 }
 
@@ -50,12 +44,7 @@ pub(super) struct GroupCounts {
 
 impl GroupCounts {
     pub(super) fn new() -> Self {
-        Self {
-            group_length: 1,
-            complete: Vec::new(),
-            current: Group::default(),
-            waiting: Vec::new(),
-        }
+        Self { group_length: 1, complete: Vec::new(), current: Group::default(), waiting: Vec::new() }
     }
 
     pub(super) fn push(&mut self, cell: u32) {

@@ -35,11 +35,7 @@ impl CellLattice {
         let mut breaks: Vec<i64> = breaks.iter().filter_map(|&x| bins.fixed_point(x)).collect();
         breaks.sort_unstable();
         breaks.dedup();
-        Self {
-            bins,
-            level: level.min(MAX_LEVEL),
-            breaks,
-        }
+        Self { bins, level: level.min(MAX_LEVEL), breaks }
     }
 
     /// The bins that the cells divide.
@@ -54,18 +50,18 @@ impl CellLattice {
         self.level
     }
 
+    /// The same lattice with each bin halved `level` times.
+    #[must_use]
+    pub fn at_level(&self, level: u32) -> Self {
+        Self { level: level.min(MAX_LEVEL), ..self.clone() }
+    }
+
     /// The cell that holds `x`, and `x` as a fixed-point number; `None` if `x` is not finite or out of reach.
     pub(super) fn locate(&self, x: f64) -> Option<(CellKey, i64)> {
         let fixed = self.bins.fixed_point(x)?;
         let piece = self.breaks.partition_point(|&b| b <= fixed);
         let piece = u32::try_from(piece).unwrap_or(u32::MAX);
-        Some((
-            CellKey {
-                lattice: fixed >> (FRACTION_BITS - self.level),
-                piece,
-            },
-            fixed,
-        ))
+        Some((CellKey { lattice: fixed >> (FRACTION_BITS - self.level), piece }, fixed))
     }
 }
 

@@ -6,7 +6,7 @@
 //!
 //! A cell stands for its samples by their mean position, so cells only need to be fine enough that the bias is close to a parabola's
 //! tangent within one: [`required_level`] picks the width from the biases and the data. All positions are summed as fixed-point
-//! integers, so condensed values add up and coarsen to the same bytes in any order.
+//! integers, so that condensed runs coarsen to the very bytes that coarser cells would have given.
 
 mod bins;
 mod cells;

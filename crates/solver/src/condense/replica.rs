@@ -26,7 +26,8 @@ pub struct CondensedReplica {
 }
 
 impl CondensedReplica {
-    /// The same run on cells halved only `level` times: exactly what condensing on those cells would have given.
+    /// The same run on cells halved at most `level` times: exactly what condensing on those cells would have given. Cells that are as
+    /// coarse or coarser already stay as they are.
     #[must_use]
     pub fn coarsened(self, level: u32) -> Self {
         let (cells, new_number) = self.cells.coarsened(level);

@@ -6,10 +6,13 @@
 //! The solver sees points with counts; whether a point was a cell or a single sample makes no difference to it.
 
 mod assemble;
+mod error;
 mod points;
 mod restrict;
+mod shared_points;
 
-pub use assemble::{EnsembleError, WindowData};
+pub use assemble::WindowData;
+pub use error::EnsembleError;
 pub use points::Points;
 
 use crate::condense::{BinGrid, Group};
@@ -30,11 +33,13 @@ pub struct Window {
     pub n_samples: u64,
     /// Samples on each point that the window visited: point number and count, increasing in the former.
     pub counts: Vec<(u32, u64)>,
-    /// Mean position on each axis (wrapped on none; displacements from the bias center on axes with a period).
+    /// Mean position on each axis; on an axis with a period that image of it which lies near the center of the bias.
     pub mean: Vec<f64>,
     /// Standard deviation on each axis.
     pub spread: Vec<f64>,
-    /// Statistical inefficiency of the slowest axis, at least 1; `None` where the series does not support one.
+    /// Effective number of independent samples: Σ N/g over its replicas. A replica whose g is unknown counts as one sample.
+    pub effective_samples: f64,
+    /// Statistical inefficiency of the slowest axis over all replicas, at least 1; `None` where a series does not support one.
     pub inefficiency: Option<f64>,
 }
 
@@ -45,10 +50,10 @@ impl Window {
         self.weight * self.n_samples as f64
     }
 
-    /// Effective number of independent samples N/g; one sample at least, N where g is unknown.
+    /// Samples that make one effective sample.
     #[must_use]
-    pub fn effective_samples(&self) -> f64 {
-        self.n_samples as f64 / self.inefficiency.unwrap_or(1.0)
+    pub fn samples_per_effective_sample(&self) -> f64 {
+        self.n_samples as f64 / self.effective_samples
     }
 
     /// Reduced bias at a position, kT.
@@ -69,7 +74,7 @@ pub struct Stream {
     pub n_samples: u64,
     /// Counts on points by stretches of time.
     pub groups: Vec<Group>,
-    /// How it is cut into batches; `None` where the series supports no error (one group, or a constant coordinate).
+    /// How it is cut into batches; `None` where the series supports no error: one group, or a constant coordinate.
     pub batches: Option<BatchRule>,
     /// Statistical inefficiency of its slowest axis.
     pub inefficiency: Option<f64>,

@@ -17,12 +17,7 @@ pub struct Points {
 impl Points {
     /// From positions (rows of `n_axes` values), with as many bins and weights as rows.
     pub(super) fn new(n_axes: usize, positions: Vec<f64>, bins: Vec<i64>, weights: Vec<f64>) -> Self {
-        Self {
-            n_axes,
-            positions,
-            bins,
-            weights,
-        }
+        Self { n_axes, positions, bins, weights }
     }
 
     /// Number of points.

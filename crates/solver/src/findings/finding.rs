@@ -46,10 +46,8 @@ pub enum Finding {
         below: String,
         /// The window above it.
         above: String,
-        /// Lower end of the uncovered stretch.
-        from: f64,
-        /// Upper end of the uncovered stretch.
-        to: f64,
+        /// Ends of the uncovered stretch; `None` where the two overlap, but by less than one independent sample.
+        range: Option<(f64, f64)>,
     },
     /// The link by which the whole profile hangs is thin.
     ThinLink {
@@ -58,7 +56,7 @@ pub enum Finding {
         /// Effective linking samples.
         linking_samples: f64,
     },
-    /// Bins between sampled ones that nothing visited.
+    /// Neighboring bins of the profile that nothing visited.
     UnsampledBins {
         /// Lower end of the stretch.
         from: f64,
@@ -150,11 +148,9 @@ impl Finding {
         match *self {
             Self::CutLastLine { .. } => (None, None, ThresholdOrigin::Occurrence),
             Self::RepeatedFrames { frames, .. } => (Some(frames as f64), None, ThresholdOrigin::Occurrence),
-            Self::FewEffectiveSamples { effective_samples, .. } => (
-                Some(effective_samples),
-                Some(FEW_EFFECTIVE_SAMPLES),
-                ThresholdOrigin::Calibration,
-            ),
+            Self::FewEffectiveSamples { effective_samples, .. } => {
+                (Some(effective_samples), Some(FEW_EFFECTIVE_SAMPLES), ThresholdOrigin::Calibration)
+            }
             Self::NoErrorSupport { samples, .. } => (Some(samples as f64), None, ThresholdOrigin::Definition),
             Self::NotLinked { .. } => (None, Some(crate::solve::LEAST_LINK), ThresholdOrigin::Definition),
             Self::ThinLink { linking_samples, .. } => {
@@ -178,24 +174,20 @@ impl Finding {
                     "{file}:{line}: {frames} frames had been written before and were left out; the first copies were kept"
                 )
             }
-            Self::FewEffectiveSamples {
-                window,
-                effective_samples,
-            } => {
+            Self::FewEffectiveSamples { window, effective_samples } => {
                 format!("window `{window}` holds only some {effective_samples:.0} independent samples")
             }
             Self::NoErrorSupport { window, samples } => {
                 format!("the {samples} samples of window `{window}` support no error: too few, or all alike")
             }
-            Self::NotLinked { below, above, from, to } => {
-                format!(
-                    "no samples link window `{below}` with window `{above}`; the axis is not covered between {from:.6} and {to:.6}"
-                )
+            Self::NotLinked { below, above, range } => {
+                let where_to = match range {
+                    Some((from, to)) => format!("the axis is not covered between {from:.6} and {to:.6}"),
+                    None => "they overlap by less than one independent sample".to_owned(),
+                };
+                format!("no samples link window `{below}` with window `{above}`; {where_to}")
             }
-            Self::ThinLink {
-                windows: (a, b),
-                linking_samples,
-            } => {
+            Self::ThinLink { windows: (a, b), linking_samples } => {
                 format!("windows `{a}` and `{b}` hang together by {linking_samples:.1} effective samples")
             }
             Self::UnsampledBins { from, to, bins } => {
@@ -222,7 +214,7 @@ impl Finding {
                 "check the column and the run; a coordinate that never moves, or a few frames, cannot show their own spread"
             }
             Self::NotLinked { .. } => {
-                "add a window between the two, or set `allow_gaps = true` to solve each group with a zero of its own"
+                "add a window between the two, or allow gaps: each group is then solved with a zero of its own"
             }
             Self::ThinLink { .. } => "add a window between the two, or run both longer",
             Self::UnsampledBins { .. } => "add a window there, or narrow the range of the profile",

@@ -10,20 +10,14 @@ use crate::solve::Links;
 pub fn look_at_ensemble(ensemble: &Ensemble) -> Vec<Finding> {
     let mut findings = Vec::new();
     for (k, window) in ensemble.windows.iter().enumerate() {
-        let supported = ensemble
-            .streams
-            .iter()
-            .filter(|stream| stream.window == k)
-            .all(|stream| stream.batches.is_some());
+        let supported =
+            ensemble.streams.iter().filter(|stream| stream.window == k).all(|stream| stream.batches.is_some());
         if !supported {
-            findings.push(Finding::NoErrorSupport {
-                window: window.name.clone(),
-                samples: window.n_samples,
-            });
-        } else if window.effective_samples() < FEW_EFFECTIVE_SAMPLES {
+            findings.push(Finding::NoErrorSupport { window: window.name.clone(), samples: window.n_samples });
+        } else if window.effective_samples < FEW_EFFECTIVE_SAMPLES {
             findings.push(Finding::FewEffectiveSamples {
                 window: window.name.clone(),
-                effective_samples: window.effective_samples(),
+                effective_samples: window.effective_samples,
             });
         }
     }
@@ -40,33 +34,23 @@ pub fn look_at_links(ensemble: &Ensemble, links: &Links) -> Vec<Finding> {
         .map(|stretch| Finding::NotLinked {
             below: name(stretch.below),
             above: name(stretch.above),
-            from: stretch.from,
-            to: stretch.to,
+            range: stretch.range,
         })
         .collect();
-    findings.extend(
-        links
-            .tree
-            .iter()
-            .filter(|link| link.linking_samples < THIN_LINK)
-            .map(|link| Finding::ThinLink {
-                windows: (name(link.windows.0), name(link.windows.1)),
-                linking_samples: link.linking_samples,
-            }),
-    );
+    findings.extend(links.tree.iter().filter(|link| link.linking_samples < THIN_LINK).map(|link| Finding::ThinLink {
+        windows: (name(link.windows.0), name(link.windows.1)),
+        linking_samples: link.linking_samples,
+    }));
     findings
 }
 
-/// Empty bins between sampled ones, and bins without an error.
+/// Stretches of empty bins, and bins without an error.
 #[must_use]
 pub fn look_at_profile(profile: &Profile) -> Vec<Finding> {
     let mut findings = Vec::new();
     let mut rest = profile.bins.as_slice();
     while let Some(start) = rest.iter().position(|bin| bin.status == BinStatus::Unsampled) {
-        let length = rest[start..]
-            .iter()
-            .take_while(|bin| bin.status == BinStatus::Unsampled)
-            .count();
+        let length = rest[start..].iter().take_while(|bin| bin.status == BinStatus::Unsampled).count();
         findings.push(Finding::UnsampledBins {
             from: rest[start].lower,
             to: rest[start + length - 1].upper,
@@ -74,17 +58,10 @@ pub fn look_at_profile(profile: &Profile) -> Vec<Finding> {
         });
         rest = &rest[start + length..];
     }
-    let without_error = profile
-        .bins
-        .iter()
-        .filter(|bin| bin.status == BinStatus::NotDetermined)
-        .count();
+    let without_error = profile.bins.iter().filter(|bin| bin.status == BinStatus::NotDetermined).count();
     if without_error > 0 {
         let of = profile.bins.iter().filter(|bin| bin.free_energy.is_some()).count();
-        findings.push(Finding::ErrorNotDetermined {
-            bins: without_error,
-            of,
-        });
+        findings.push(Finding::ErrorNotDetermined { bins: without_error, of });
     }
     findings
 }

@@ -9,7 +9,7 @@ mod streams;
 mod uncertainty;
 
 pub use quantity::{Direct, Quantity};
-pub use uncertainty::{Support, Uncertainty};
+pub use uncertainty::{FEW_BATCHES, FEW_DEGREES, Support, TOO_FEW_BATCHES, TOO_FEW_DEGREES, Uncertainty};
 
 use crate::ensemble::Ensemble;
 use crate::solve::{Likelihood, Solution, factorized};
@@ -22,7 +22,7 @@ pub struct Influence {
     gauge: usize,
     factor: Cholesky<f64, Dyn>,
     streams: Vec<StreamBatches>,
-    /// Windows with a replica whose series supports no error.
+    /// Windows none of whose replicas supports an error.
     unsupported: Vec<usize>,
     /// ln D of each point at the solution.
     log_denominators: Vec<f64>,
@@ -60,29 +60,23 @@ impl Influence {
         let zeros = vec![0.0; ensemble.n_windows()];
         let growth = vec![1.0; ensemble.n_windows()];
         let factor = factorized(likelihood.hessian(&zeros), solution.gauge)?;
-        let answered: Vec<Vec<(u32, f64)>> = (0..ensemble.points.len())
-            .map(|point| likelihood.answered(point, &growth).collect())
+        let answered: Vec<Vec<(u32, f64)>> =
+            (0..ensemble.points.len()).map(|point| likelihood.answered(point, &growth).collect()).collect();
+        let unsupported = (0..ensemble.n_windows())
+            .filter(|&k| ensemble.streams.iter().all(|stream| stream.window != k || stream.batches.is_none()))
             .collect();
-        let mut unsupported: Vec<usize> = ensemble
-            .streams
-            .iter()
-            .filter(|stream| stream.batches.is_none())
-            .map(|stream| stream.window)
-            .collect();
-        unsupported.dedup();
         Some(Self {
             gauge: solution.gauge,
             factor,
             streams: StreamBatches::of_ensemble(ensemble, &answered),
             unsupported,
-            log_denominators: (0..ensemble.points.len())
-                .map(|point| likelihood.log_denominator(point))
-                .collect(),
+            log_denominators: (0..ensemble.points.len()).map(|point| likelihood.log_denominator(point)).collect(),
             answered,
         })
     }
 
-    /// Windows with a replica whose series supports no error: a single group of samples, or a constant coordinate.
+    /// Windows none of whose replicas supports an error: a single group of samples, or a constant coordinate. Where there is one, no
+    /// quantity has an error.
     #[must_use]
     pub fn unsupported_windows(&self) -> &[usize] {
         &self.unsupported
@@ -107,12 +101,7 @@ impl Influence {
         free.remove(self.gauge);
         let mut pull: Vec<f64> = self.factor.solve(&DVector::from_vec(free)).iter().copied().collect();
         pull.insert(self.gauge, 0.0);
-        Deviations(
-            self.streams
-                .iter()
-                .flat_map(|stream| stream.deviations(quantity, &pull))
-                .collect(),
-        )
+        Deviations(self.streams.iter().flat_map(|stream| stream.deviations(quantity, &pull)).collect())
     }
 
     /// Standard error, degrees of freedom and interval of a quantity with the given deviations.
@@ -130,8 +119,6 @@ impl Influence {
     /// Covariance matrix of quantities with the given deviations.
     #[must_use]
     pub fn covariance(&self, deviations: &[Deviations]) -> DMatrix<f64> {
-        DMatrix::from_fn(deviations.len(), deviations.len(), |i, j| {
-            deviations[i].covariance(&deviations[j])
-        })
+        DMatrix::from_fn(deviations.len(), deviations.len(), |i, j| deviations[i].covariance(&deviations[j]))
     }
 }

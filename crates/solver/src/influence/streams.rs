@@ -21,17 +21,26 @@ pub(super) struct StreamBatches {
     /// Windows that answer for any of its samples.
     present: Vec<u32>,
     batches: Vec<Batch>,
-    /// ω √(N / ((a − 1) h)): turns a length-weighted deviation into its part of the standard error.
+    /// ω √(N / ((a − 1) h)), more where it stands in for a replica without an error of its own: turns a length-weighted deviation into its part of the standard error.
     scale: f64,
 }
 
 impl StreamBatches {
     /// The batches of every replica that supports an error.
     pub(super) fn of_ensemble(ensemble: &Ensemble, answered: &[Vec<(u32, f64)>]) -> Vec<Self> {
+        let mut supported = vec![0; ensemble.n_windows()];
+        for stream in ensemble.streams.iter().filter(|stream| stream.batches.is_some()) {
+            supported[stream.window] += stream.n_samples;
+        }
         ensemble
             .streams
             .par_iter()
-            .filter_map(|stream| Self::of(stream, ensemble.windows[stream.window].weight, answered))
+            .filter_map(|stream| {
+                let window = &ensemble.windows[stream.window];
+                // A replica that cannot show its own spread has that of its window's other replicas.
+                let stands_for = window.n_samples as f64 / supported[stream.window] as f64;
+                Self::of(stream, window.weight * stands_for.sqrt(), answered)
+            })
             .collect()
     }
 
@@ -45,7 +54,7 @@ impl StreamBatches {
             .collect();
         present.sort_unstable();
         present.dedup();
-        let batches = (0..rule.n_batches)
+        let batches: Vec<Batch> = (0..rule.n_batches)
             .map(|i| {
                 let mut counts: BTreeMap<u32, u64> = BTreeMap::new();
                 for group in &stream.groups[rule.groups_of(i, stream.groups.len())] {
@@ -57,12 +66,9 @@ impl StreamBatches {
             })
             .collect();
         let degrees = (rule.n_batches - 1) as f64;
-        let scale = weight * (stream.n_samples as f64 / (degrees * rule.correction)).sqrt();
-        Some(Self {
-            present,
-            batches,
-            scale,
-        })
+        let lengths: Vec<f64> = batches.iter().map(|batch| batch.n_samples).collect();
+        let scale = weight * (stream.n_samples as f64 / (degrees * rule.shown_part(&lengths))).sqrt();
+        Some(Self { present, batches, scale })
     }
 
     pub(super) fn n_batches(&self) -> usize {
@@ -75,28 +81,13 @@ impl StreamBatches {
             .batches
             .iter()
             .map(|batch| {
-                let indirect: f64 = self
-                    .present
-                    .iter()
-                    .zip(&batch.answered)
-                    .map(|(&k, s)| pull[k as usize] * s)
-                    .sum();
+                let indirect: f64 = self.present.iter().zip(&batch.answered).map(|(&k, s)| pull[k as usize] * s).sum();
                 batch.direct_sum(quantity) / batch.n_samples - indirect
             })
             .collect();
         let total: f64 = self.batches.iter().map(|batch| batch.n_samples).sum();
-        let center = self
-            .batches
-            .iter()
-            .zip(&means)
-            .map(|(batch, y)| batch.n_samples * y)
-            .sum::<f64>()
-            / total;
-        self.batches
-            .iter()
-            .zip(&means)
-            .map(|(batch, y)| self.scale * batch.n_samples.sqrt() * (y - center))
-            .collect()
+        let center = self.batches.iter().zip(&means).map(|(batch, y)| batch.n_samples * y).sum::<f64>() / total;
+        self.batches.iter().zip(&means).map(|(batch, y)| self.scale * batch.n_samples.sqrt() * (y - center)).collect()
     }
 }
 
@@ -114,11 +105,7 @@ impl Batch {
         for sum in &mut sums {
             *sum /= n_samples;
         }
-        Self {
-            n_samples,
-            entries,
-            answered: sums,
-        }
+        Self { n_samples, entries, answered: sums }
     }
 
     fn direct_sum(&self, quantity: &Quantity) -> f64 {
@@ -127,9 +114,7 @@ impl Batch {
             .iter()
             .map(|direct| {
                 let end = direct.first + direct.values.len();
-                let from = self
-                    .entries
-                    .partition_point(|&(point, _)| (point as usize) < direct.first);
+                let from = self.entries.partition_point(|&(point, _)| (point as usize) < direct.first);
                 self.entries[from..]
                     .iter()
                     .take_while(|&&(point, _)| (point as usize) < end)

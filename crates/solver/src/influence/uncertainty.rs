@@ -46,16 +46,8 @@ impl Uncertainty {
             squares += part * part / (n_batches as f64 - 1.0);
             weighted_batches += part * n_batches as f64;
         }
-        let degrees_of_freedom = if squares > 0.0 {
-            (variance * variance / squares).max(1.0)
-        } else {
-            1.0
-        };
-        let mean_batches = if variance > 0.0 {
-            weighted_batches / variance
-        } else {
-            0.0
-        };
+        let degrees_of_freedom = if squares > 0.0 { (variance * variance / squares).max(1.0) } else { 1.0 };
+        let mean_batches = if variance > 0.0 { weighted_batches / variance } else { 0.0 };
         let standard_error = variance.sqrt();
         let has_error = supported && standard_error.is_finite() && standard_error > 0.0;
         let support = if has_error && mean_batches >= FEW_BATCHES && degrees_of_freedom >= FEW_DEGREES {

@@ -14,8 +14,5 @@ where
     T: Send,
     F: Fn(Range<usize>) -> T + Sync,
 {
-    (0..n_items.div_ceil(chunk))
-        .into_par_iter()
-        .map(|i| work(i * chunk..((i + 1) * chunk).min(n_items)))
-        .collect()
+    (0..n_items.div_ceil(chunk)).into_par_iter().map(|i| work(i * chunk..((i + 1) * chunk).min(n_items))).collect()
 }

@@ -2,6 +2,9 @@
 
 mod request;
 mod result;
+mod support;
+mod zero;
 
 pub use request::{ProfileError, ProfileRequest, Zero};
-pub use result::{BinStatus, FEWEST_EFFECTIVE_SAMPLES, Profile, ProfileBin};
+pub use result::{BinStatus, Profile, ProfileBin};
+pub use support::FEWEST_EFFECTIVE_SAMPLES;

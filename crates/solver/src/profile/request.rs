@@ -46,21 +46,25 @@ pub enum ProfileError {
     },
     /// No sample lies in the bins of the output.
     NothingSampled,
-    /// The likelihood has no curvature in some direction at the solution, so no error follows from it.
-    NoCurvature,
+    /// The range of the zero is empty, out of reach, or longer than the period.
+    ZeroRange {
+        /// Lower end given.
+        from: f64,
+        /// Upper end given.
+        to: f64,
+    },
 }
 
 impl fmt::Display for ProfileError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             Self::ZeroNotSampled { position, .. } => {
-                write!(
-                    f,
-                    "the zero of the profile needs the bin at {position}, where nothing was sampled"
-                )
+                write!(f, "the zero of the profile needs the bin at {position}, where nothing was sampled")
             }
             Self::NothingSampled => write!(f, "no sample lies in the range of the profile"),
-            Self::NoCurvature => write!(f, "some windows hang together by too little for an error to follow"),
+            Self::ZeroRange { from, to } => {
+                write!(f, "the zero of the profile needs a range of the axis within one period, found {from} to {to}")
+            }
         }
     }
 }

@@ -17,42 +17,44 @@ pub const MAX_BATCHES: usize = 100;
 pub struct BatchRule {
     /// Number of batches, 2 to [`MAX_BATCHES`].
     pub n_batches: usize,
-    /// h(u) in (0, 1]: the variance of batch means is divided by this.
-    pub correction: f64,
+    /// Mean lag s in samples; 0 where the run passes for independent.
+    pub mean_lag: f64,
 }
 
 impl BatchRule {
-    /// The rule for a run of `n_blocks` blocks, of which `n_groups` groups can be told apart, with the given mean lag in blocks.
+    /// The rule for a run of `n_blocks` blocks of `block_length` samples, of which `n_groups` groups can be told apart.
     ///
-    /// `None` if fewer than two groups exist: one batch shows no spread.
+    /// `None` if fewer than two groups or blocks exist: one batch shows no spread.
     #[must_use]
-    pub fn new(n_blocks: usize, n_groups: usize, correlation: &MeanLag) -> Option<Self> {
+    pub fn new(n_blocks: usize, block_length: u64, n_groups: usize, correlation: &MeanLag) -> Option<Self> {
         if n_groups < 2 || n_blocks < 2 {
             return None;
         }
-        let most = n_groups.min(MAX_BATCHES);
         let s = correlation.mean_lag;
-        if s <= 0.0 {
-            return Some(Self {
-                n_batches: most,
-                correction: 1.0,
-            });
+        let mut n_batches = n_groups.min(MAX_BATCHES);
+        while n_batches > 2 && n_batches as f64 * 6.0 * s > n_blocks as f64 {
+            n_batches -= 1;
         }
-        let b = n_blocks as f64;
-        let mut n_batches = 2;
-        while n_batches < most && (n_batches + 1) as f64 * 6.0 * s <= b {
-            n_batches += 1;
-        }
-        let u = b / (n_batches as f64 * s);
-        Some(Self {
-            n_batches,
-            correction: 1.0 - (-(-u).exp_m1()) / u,
-        })
+        Some(Self { n_batches, mean_lag: s * block_length as f64 })
     }
 
     /// Groups of batch `i`: the half-open range floor(i G/a) .. floor((i+1) G/a).
     #[must_use]
     pub fn groups_of(&self, i: usize, n_groups: usize) -> std::ops::Range<usize> {
         i * n_groups / self.n_batches..(i + 1) * n_groups / self.n_batches
+    }
+
+    /// The part of the long-run variance that the spread of batches of the given lengths (in samples) shows, in (0, 1]: the mean of h(u)
+    /// over them.
+    #[must_use]
+    pub fn shown_part(&self, lengths: &[f64]) -> f64 {
+        if self.mean_lag <= 0.0 || lengths.is_empty() {
+            return 1.0;
+        }
+        let shown = |length: &f64| {
+            let u = length / self.mean_lag;
+            1.0 + (-u).exp_m1() / u
+        };
+        lengths.iter().map(shown).sum::<f64>() / lengths.len() as f64
     }
 }

@@ -23,13 +23,7 @@ impl BlockMeans {
     /// No samples yet, of `n_channels` channels.
     #[must_use]
     pub fn new(n_channels: usize) -> Self {
-        Self {
-            n_channels,
-            block_length: 1,
-            means: Vec::new(),
-            partial_sums: vec![0.0; n_channels],
-            partial_count: 0,
-        }
+        Self { n_channels, block_length: 1, means: Vec::new(), partial_sums: vec![0.0; n_channels], partial_count: 0 }
     }
 
     /// Takes one value of every channel in (a slice of `n_channels` values).
@@ -86,11 +80,6 @@ impl BlockMeans {
     /// The block means of one channel, in the order of time.
     #[must_use]
     pub fn channel(&self, channel: usize) -> Vec<f64> {
-        self.means
-            .iter()
-            .skip(channel)
-            .step_by(self.n_channels)
-            .copied()
-            .collect()
+        self.means.iter().skip(channel).step_by(self.n_channels).copied().collect()
     }
 }

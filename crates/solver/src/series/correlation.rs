@@ -53,36 +53,20 @@ impl MeanLag {
         let mut sum = 0.0;
         let mut lag_sum = 0.0;
         for m in 0..n_blocks / 2 {
-            let pair = if m == 0 {
-                1.0 + rho(1)
-            } else {
-                rho(2 * m) + rho(2 * m + 1)
-            };
+            let pair = if m == 0 { 1.0 + rho(1) } else { rho(2 * m) + rho(2 * m + 1) };
             if pair <= 0.0 {
                 break;
             }
             smallest = pair.min(smallest);
             sum += smallest;
-            lag_sum += if m == 0 {
-                smallest - 1.0
-            } else {
-                (2.0 * m as f64 + 0.5) * smallest
-            };
+            lag_sum += if m == 0 { smallest - 1.0 } else { (2.0 * m as f64 + 0.5) * smallest };
         }
         if rho(1) < 1.0 / b.sqrt() {
-            return Some(Self {
-                mean_lag: 0.0,
-                block_inefficiency: 1.0,
-                block_variance: variance,
-            });
+            return Some(Self { mean_lag: 0.0, block_inefficiency: 1.0, block_variance: variance });
         }
         let block_inefficiency = 2.0 * sum - 1.0;
         let mean_lag = (2.0 * lag_sum / block_inefficiency.max(1.0)).clamp(0.0, b / 2.0);
-        Some(Self {
-            mean_lag,
-            block_inefficiency,
-            block_variance: variance,
-        })
+        Some(Self { mean_lag, block_inefficiency, block_variance: variance })
     }
 
     /// Statistical inefficiency of the samples: long-run variance over plain variance, block length × Var(block means) × G / Var(samples).

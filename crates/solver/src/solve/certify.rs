@@ -23,10 +23,7 @@ pub fn certify(ensemble: &Ensemble, f: &[f64], gauge: usize) -> Option<Certifica
     let likelihood = Likelihood::at(ensemble, f);
     let (step, gradient) = newton_step(&likelihood, &vec![0.0; f.len()], gauge)?;
     let total: f64 = likelihood.totals().iter().sum();
-    let certificate = Certificate {
-        newton_step: largest(&step),
-        relative_gradient: largest(&gradient) / total,
-    };
+    let certificate = Certificate { newton_step: largest(&step), relative_gradient: largest(&gradient) / total };
     (certificate.newton_step.is_finite() && certificate.relative_gradient.is_finite()).then_some(certificate)
 }
 
@@ -54,8 +51,20 @@ pub(super) fn without(values: &[f64], gauge: usize) -> Vec<f64> {
 
 /// Largest absolute value; NaN if any value is.
 pub(super) fn largest(values: &[f64]) -> f64 {
-    values.iter().fold(
-        0.0,
-        |largest: f64, x| if x.abs() <= largest { largest } else { x.abs() },
-    )
+    values.iter().fold(0.0, |largest: f64, x| if largest.is_nan() || x.abs() <= largest { largest } else { x.abs() })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_step_that_is_not_a_number_anywhere_is_never_small() {
+        for place in 0..3 {
+            let mut step = vec![1e-12, -2e-12, 0.0];
+            step[place] = f64::NAN;
+            assert!(largest(&step).is_nan(), "at {place}");
+        }
+        assert!((largest(&[1e-12, -2e-12, 0.0]) - 2e-12).abs() < f64::EPSILON);
+    }
 }

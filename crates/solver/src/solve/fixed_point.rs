@@ -50,19 +50,10 @@ impl Minimizer for SelfConsistent {
                 delta.fill(0.0);
             }
         }
-        Ok(Minimized {
-            f: moved(&likelihood, &delta),
-            iterations: iteration,
-        })
+        Ok(Minimized { f: moved(&likelihood, &delta), iterations: iteration })
     }
 }
 
 fn moved(likelihood: &Likelihood<'_>, delta: &[f64]) -> Vec<f64> {
-    likelihood
-        .shares()
-        .reference()
-        .iter()
-        .zip(delta)
-        .map(|(f, d)| f + d)
-        .collect()
+    likelihood.shares().reference().iter().zip(delta).map(|(f, d)| f + d).collect()
 }

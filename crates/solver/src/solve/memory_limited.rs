@@ -25,33 +25,22 @@ impl Minimizer for MemoryLimited {
         options: &SolveOptions,
         progress: &mut Progress<'_>,
     ) -> Result<Minimized, Stopped> {
-        in_rounds(
-            ensemble,
-            gauge,
-            start,
-            options,
-            progress,
-            20,
-            |likelihood, iterations| {
-                let n_free = likelihood.totals().len() - 1;
-                let total: f64 = likelihood.totals().iter().sum();
-                let hessian = likelihood.hessian(&vec![0.0; n_free + 1]) / total;
-                let objective = Objective::new(likelihood, gauge).preconditioned_by(factorized(hessian, gauge)?);
-                let method = LBFGS::new(MoreThuenteLineSearch::new(), MEMORY)
-                    .with_tolerance_grad(1e-16)
-                    .ok()?
-                    .with_tolerance_cost(0.0)
-                    .ok()?;
-                let result = Executor::new(objective.clone(), method)
-                    .configure(|state| state.param(vec![0.0; n_free]).max_iters(iterations))
-                    .run()
-                    .ok()?;
-                let best = result.state().get_best_param()?;
-                Some(Round {
-                    delta: objective.to_delta(best),
-                    iterations: result.state().get_iter(),
-                })
-            },
-        )
+        in_rounds(ensemble, gauge, start, options, progress, 20, |likelihood, iterations| {
+            let n_free = likelihood.totals().len() - 1;
+            let total: f64 = likelihood.totals().iter().sum();
+            let hessian = likelihood.hessian(&vec![0.0; n_free + 1]) / total;
+            let objective = Objective::new(likelihood, gauge).preconditioned_by(factorized(hessian, gauge)?);
+            let method = LBFGS::new(MoreThuenteLineSearch::new(), MEMORY)
+                .with_tolerance_grad(1e-16)
+                .ok()?
+                .with_tolerance_cost(0.0)
+                .ok()?;
+            let result = Executor::new(objective.clone(), method)
+                .configure(|state| state.param(vec![0.0; n_free]).max_iters(iterations))
+                .run()
+                .ok()?;
+            let best = result.state().get_best_param()?;
+            Some(Round { delta: objective.to_delta(best), iterations: result.state().get_iter() })
+        })
     }
 }

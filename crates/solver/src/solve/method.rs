@@ -30,12 +30,7 @@ pub enum Method {
 
 impl Method {
     /// All methods.
-    pub const ALL: [Self; 4] = [
-        Self::Newton,
-        Self::SelfConsistent,
-        Self::TrustRegion,
-        Self::LimitedMemory,
-    ];
+    pub const ALL: [Self; 4] = [Self::Newton, Self::SelfConsistent, Self::TrustRegion, Self::LimitedMemory];
 
     /// Name in a job file.
     #[must_use]
@@ -71,11 +66,7 @@ pub struct SolveOptions {
 
 impl Default for SolveOptions {
     fn default() -> Self {
-        Self {
-            method: Method::default(),
-            tolerance: 1e-10,
-            max_iterations: None,
-        }
+        Self { method: Method::default(), tolerance: 1e-10, max_iterations: None }
     }
 }
 
@@ -84,7 +75,7 @@ pub type Progress<'a> = dyn FnMut(u64, Option<f64>) -> ControlFlow<()> + 'a;
 
 /// Where a method stopped; whether that is the minimum is for [`certify`] to say.
 #[derive(Debug, Clone, PartialEq)]
-pub struct Minimized {
+pub(super) struct Minimized {
     /// Reduced free energies in kT.
     pub f: Vec<f64>,
     /// Iterations taken.
@@ -93,10 +84,10 @@ pub struct Minimized {
 
 /// The caller asked to stop.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub struct Stopped;
+pub(super) struct Stopped;
 
 /// A way to the minimum of the likelihood.
-pub trait Minimizer {
+pub(super) trait Minimizer {
     /// Walks from `start` (kT, one a window) as far as it can, holding `start[gauge]`.
     ///
     /// # Errors
@@ -141,13 +132,7 @@ impl fmt::Display for SolveError {
                 "the windows fall into {} groups that no samples link, so their profiles cannot be joined",
                 links.groups.len()
             ),
-            Self::NotConverged {
-                certificate,
-                tolerance,
-                method,
-                iterations,
-                ..
-            } => {
+            Self::NotConverged { certificate, tolerance, method, iterations, .. } => {
                 write!(f, "`{}` stopped after {iterations} iterations ", method.name())?;
                 match certificate {
                     Some(c) => write!(
@@ -187,13 +172,9 @@ pub fn solve(
         .map_err(|Stopped| SolveError::Interrupted)?;
     let free_energies: Vec<f64> = f.iter().map(|x| x - f[gauge]).collect();
     match certify(ensemble, &free_energies, gauge) {
-        Some(certificate) if certificate.newton_step <= options.tolerance => Ok(Solution {
-            free_energies,
-            gauge,
-            method: options.method,
-            iterations,
-            certificate,
-        }),
+        Some(certificate) if certificate.newton_step <= options.tolerance => {
+            Ok(Solution { free_energies, gauge, method: options.method, iterations, certificate })
+        }
         certificate => Err(SolveError::NotConverged {
             free_energies,
             certificate,

@@ -7,6 +7,7 @@
 //! [`Links`] finds a start and which windows hang together; a [`Method`] walks to the minimum; [`certify`] measures how far from it
 //! the result is, in the same way for each of them.
 
+mod candidates;
 mod certify;
 mod fixed_point;
 mod likelihood;
@@ -18,15 +19,16 @@ mod objective;
 mod pair;
 mod restarts;
 mod shares;
+mod solution;
 mod trust_region;
+mod uncovered;
 
 pub(crate) use certify::factorized;
 pub use certify::{Certificate, certify};
-pub use likelihood::{Evaluation, Likelihood};
-pub use links::{LEAST_LINK, Link, Links, UncoveredStretch};
-pub use method::{Method, Minimizer, Progress, SolveError, SolveOptions, solve};
+pub(crate) use likelihood::Likelihood;
+pub use links::{LEAST_LINK, Link, Links};
+pub use method::{Method, Progress, SolveError, SolveOptions, solve};
 pub use pair::{PairSolution, solve_pair};
-pub use shares::{SHARE_CUT, Shares};
-
-mod solution;
+pub use shares::SHARE_CUT;
 pub use solution::Solution;
+pub use uncovered::UncoveredStretch;

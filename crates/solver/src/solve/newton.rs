@@ -30,41 +30,20 @@ impl Minimizer for Newton {
         let limit = options.max_iterations.unwrap_or(200);
         for iteration in 1..=limit {
             let Some((mut step, _)) = newton_step(&likelihood, &delta, gauge) else {
-                return Ok(Minimized {
-                    f,
-                    iterations: iteration,
-                });
+                return Ok(Minimized { f, iterations: iteration });
             };
             let length = largest(&step);
             if progress(iteration, Some(length)) == ControlFlow::Break(()) {
                 return Err(Stopped);
             }
-            if length > LONGEST_STEP {
-                for s in &mut step {
-                    *s *= LONGEST_STEP / length;
-                }
-            }
-            let fraction = if length < SURE_STEP {
-                1.0
-            } else {
-                decreasing_fraction(&likelihood, &delta, &step)
-            };
+            let fraction = damp(&likelihood, &delta, &mut step);
             for (d, s) in delta.iter_mut().zip(&step) {
                 *d += fraction * s;
             }
-            f = likelihood
-                .shares()
-                .reference()
-                .iter()
-                .zip(&delta)
-                .map(|(f, d)| f + d)
-                .collect();
+            f = likelihood.shares().reference().iter().zip(&delta).map(|(f, d)| f + d).collect();
             // One more step from here would be below the tolerance squared: the certificate will confirm it.
             if length < options.tolerance.sqrt().min(SURE_STEP) * 1e-2 || fraction == 0.0 {
-                return Ok(Minimized {
-                    f,
-                    iterations: iteration,
-                });
+                return Ok(Minimized { f, iterations: iteration });
             }
             if largest(&delta) > REFRESH_BEYOND {
                 likelihood = Likelihood::at(ensemble, &f);
@@ -73,6 +52,17 @@ impl Minimizer for Newton {
         }
         Ok(Minimized { f, iterations: limit })
     }
+}
+
+/// Shortens a step to the longest that is allowed, and returns the part of it that lowers the likelihood.
+pub(super) fn damp(likelihood: &Likelihood<'_>, delta: &[f64], step: &mut [f64]) -> f64 {
+    let length = largest(step);
+    if length > LONGEST_STEP {
+        for s in step.iter_mut() {
+            *s *= LONGEST_STEP / length;
+        }
+    }
+    if length < SURE_STEP { 1.0 } else { decreasing_fraction(likelihood, delta, step) }
 }
 
 /// The longest of 1, ½, ¼… of the step that lowers the likelihood by a thousandth of what its slope promises; 0 if none does.

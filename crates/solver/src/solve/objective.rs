@@ -23,19 +23,11 @@ pub(super) struct Objective<'a> {
 impl<'a> Objective<'a> {
     pub(super) fn new(likelihood: &'a Likelihood<'a>, gauge: usize) -> Self {
         let scale = 1.0 / likelihood.totals().iter().sum::<f64>();
-        Self {
-            likelihood,
-            gauge,
-            scale,
-            preconditioner: None,
-        }
+        Self { likelihood, gauge, scale, preconditioner: None }
     }
 
     pub(super) fn preconditioned_by(self, factor: Cholesky<f64, Dyn>) -> Self {
-        Self {
-            preconditioner: Some(Arc::new(factor)),
-            ..self
-        }
+        Self { preconditioner: Some(Arc::new(factor)), ..self }
     }
 
     /// δ of every window, 0 in the gauge window, from the variables.
@@ -88,11 +80,7 @@ impl CostFunction for Objective<'_> {
 
     fn cost(&self, variables: &Vec<f64>) -> Result<f64, Error> {
         let value = self.likelihood.evaluate(&self.checked_delta(variables)?).value * self.scale;
-        if value.is_finite() {
-            Ok(value)
-        } else {
-            Err(Error::msg("likelihood is not finite"))
-        }
+        if value.is_finite() { Ok(value) } else { Err(Error::msg("likelihood is not finite")) }
     }
 }
 
@@ -132,9 +120,6 @@ impl<'a> Hessian for Objective<'a> {
 
     fn hessian(&self, variables: &Vec<f64>) -> Result<HessianOperator<'a>, Error> {
         let delta = Arc::new(self.checked_delta(variables)?);
-        Ok(HessianOperator {
-            objective: self.clone(),
-            delta,
-        })
+        Ok(HessianOperator { objective: self.clone(), delta })
     }
 }

@@ -26,10 +26,7 @@ pub fn solve_pair(ensemble: &Ensemble, i: usize, j: usize) -> PairSolution {
             .iter()
             .map(|&(point, count)| {
                 let position = ensemble.points.position(point as usize);
-                (
-                    offset + first.reduced_bias(position) - second.reduced_bias(position),
-                    count as f64,
-                )
+                (offset + first.reduced_bias(position) - second.reduced_bias(position), count as f64)
             })
             .collect()
     };
@@ -43,18 +40,13 @@ pub fn solve_pair(ensemble: &Ensemble, i: usize, j: usize) -> PairSolution {
     let excess = |delta: f64| {
         let (a, a_slope) = answered_by_second(delta, &of_first);
         let (b, b_slope) = answered_by_second(delta, &of_second);
-        (
-            first.weight * a + second.weight * b - second.total_weight(),
-            first.weight * a_slope + second.weight * b_slope,
-        )
+        (first.weight * a + second.weight * b - second.total_weight(), first.weight * a_slope + second.weight * b_slope)
     };
     let difference = increasing_root(excess);
-    let linking_samples = answered_by_second(difference, &of_first).0 / first.inefficiency.unwrap_or(1.0)
-        + (second.n_samples as f64 - answered_by_second(difference, &of_second).0) / second.inefficiency.unwrap_or(1.0);
-    PairSolution {
-        difference,
-        linking_samples,
-    }
+    let linking_samples = answered_by_second(difference, &of_first).0 / first.samples_per_effective_sample()
+        + (second.n_samples as f64 - answered_by_second(difference, &of_second).0)
+            / second.samples_per_effective_sample();
+    PairSolution { difference, linking_samples }
 }
 
 /// Root of an increasing function (value and slope), by Newton steps kept inside a shrinking bracket.
@@ -77,11 +69,7 @@ fn increasing_root(function: impl Fn(f64) -> (f64, f64)) -> f64 {
             high = x;
         }
         let newton = x - value / slope;
-        let next = if newton > low && newton < high {
-            newton
-        } else {
-            f64::midpoint(low, high)
-        };
+        let next = if newton > low && newton < high { newton } else { f64::midpoint(low, high) };
         if (next - x).abs() <= 1e-13 * (1.0 + x.abs()) {
             return next;
         }

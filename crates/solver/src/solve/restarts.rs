@@ -3,6 +3,7 @@
 use super::certify::{largest, newton_step};
 use super::likelihood::Likelihood;
 use super::method::{Minimized, Progress, SolveOptions, Stopped};
+use super::newton::damp;
 use crate::ensemble::Ensemble;
 use std::ops::ControlFlow;
 
@@ -17,6 +18,7 @@ pub(super) struct Round {
 /// Lets `run` (given the likelihood and its number of iterations) go on from where the last round ended, with the shares looked up
 /// again, until the Newton step is below the tolerance, no round comes closer any more, or the iterations are spent.
 ///
+/// A round that fails, because its first step left the reach of the shares, gives way to one damped Newton step.
 /// The minimizers have no test of their own that can be trusted at this precision: values that differ by less than their rounding
 /// end a line search. Formed relative to a reference close by, they keep their digits.
 pub(super) fn in_rounds(
@@ -35,7 +37,9 @@ pub(super) fn in_rounds(
     let limit = options.max_iterations.unwrap_or(2_000);
     while iterations < limit && rounds_without_gain < 5 && f.len() > 1 {
         let likelihood = Likelihood::at(ensemble, &f);
-        let distance = newton_step(&likelihood, &vec![0.0; f.len()], gauge).map(|(step, _)| largest(&step));
+        let zeros = vec![0.0; f.len()];
+        let newton = newton_step(&likelihood, &zeros, gauge).map(|(step, _)| step);
+        let distance = newton.as_ref().map(|step| largest(step));
         if progress(iterations, distance) == ControlFlow::Break(()) {
             return Err(Stopped);
         }
@@ -47,14 +51,17 @@ pub(super) fn in_rounds(
             }
             _ => rounds_without_gain += 1,
         }
-        let Some(round) = run(&likelihood, round_length.min(limit - iterations)) else {
-            break;
-        };
-        iterations += round.iterations.max(1);
-        if round.delta.iter().all(|d| d.is_finite()) {
-            for (f, d) in f.iter_mut().zip(&round.delta) {
-                *f += d;
-            }
+        let round = run(&likelihood, round_length.min(limit - iterations));
+        iterations += round.as_ref().map_or(1, |round| round.iterations.max(1));
+        let reached = round.map(|round| round.delta).filter(|delta| delta.iter().all(|d| d.is_finite()));
+        let moved = reached.filter(|delta| delta.iter().any(|d| *d != 0.0)).or_else(|| {
+            let mut step = newton?;
+            let fraction = damp(&likelihood, &zeros, &mut step);
+            Some(step.iter().map(|s| fraction * s).collect())
+        });
+        let Some(delta) = moved else { break };
+        for (f, d) in f.iter_mut().zip(&delta) {
+            *f += d;
         }
     }
     Ok(Minimized { f, iterations })

@@ -32,16 +32,11 @@ impl Shares {
     /// otherwise its bias is evaluated on each point of the stretch.
     #[must_use]
     pub fn at(ensemble: &Ensemble, reference: &[f64]) -> Self {
-        let log_weights: Vec<f64> = ensemble
-            .windows
-            .iter()
-            .zip(reference)
-            .map(|(window, f)| window.total_weight().ln() + f)
-            .collect();
+        let log_weights: Vec<f64> =
+            ensemble.windows.iter().zip(reference).map(|(window, f)| window.total_weight().ln() + f).collect();
         let floor = floor_of_denominator(ensemble, &log_weights);
-        let parts = ordered_map(ensemble.points.len(), STRETCH, |points| {
-            stretch(ensemble, &log_weights, &floor, points)
-        });
+        let parts =
+            ordered_map(ensemble.points.len(), STRETCH, |points| stretch(ensemble, &log_weights, &floor, points));
         let mut shares = Self {
             reference: reference.to_vec(),
             offsets: vec![0],
@@ -69,12 +64,6 @@ impl Shares {
     #[must_use]
     pub fn n_points(&self) -> usize {
         self.shifts.len()
-    }
-
-    /// Number of entries over all points.
-    #[must_use]
-    pub fn n_entries(&self) -> usize {
-        self.windows.len()
     }
 
     /// Windows with weight on a point, increasing, and their terms relative to the largest.
@@ -122,27 +111,18 @@ fn floor_of_denominator(ensemble: &Ensemble, log_weights: &[f64]) -> Vec<f64> {
 fn stretch(ensemble: &Ensemble, log_weights: &[f64], floor: &[f64], points: Range<usize>) -> Part {
     let cut = SHARE_CUT.ln();
     let (lower, upper) = ensemble.points.bounding_box(points.clone());
-    let least = floor[points.clone()]
-        .iter()
-        .fold(f64::INFINITY, |least, &x| if x < least { x } else { least });
+    let least = floor[points.clone()].iter().fold(f64::INFINITY, |least, &x| if x < least { x } else { least });
     // One list a window of the stretch; a transposed copy then gives one list a point.
     let mut columns: Vec<(u32, Vec<f64>)> = Vec::new();
     for (k, window) in ensemble.windows.iter().enumerate() {
         if log_weights[k] - window.bias.lower_bound(&lower, &upper) < least + cut {
             continue;
         }
-        let terms = points
-            .clone()
-            .map(|point| log_weights[k] - window.reduced_bias(ensemble.points.position(point)))
-            .collect();
+        let terms =
+            points.clone().map(|point| log_weights[k] - window.reduced_bias(ensemble.points.position(point))).collect();
         columns.push((u32::try_from(k).unwrap_or(u32::MAX), terms));
     }
-    let mut part = Part {
-        ends: Vec::new(),
-        windows: Vec::new(),
-        terms: Vec::new(),
-        shifts: Vec::new(),
-    };
+    let mut part = Part { ends: Vec::new(), windows: Vec::new(), terms: Vec::new(), shifts: Vec::new() };
     for (i, point) in points.enumerate() {
         let largest = columns
             .iter()

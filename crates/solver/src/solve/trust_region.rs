@@ -18,35 +18,17 @@ impl Minimizer for TrustRegion {
         options: &SolveOptions,
         progress: &mut Progress<'_>,
     ) -> Result<Minimized, Stopped> {
-        in_rounds(
-            ensemble,
-            gauge,
-            start,
-            options,
-            progress,
-            12,
-            |likelihood, iterations| {
-                let objective = Objective::new(likelihood, gauge);
-                let n_free = likelihood.totals().len() - 1;
-                let inner = Steihaug::new()
-                    .with_epsilon(1e-12)
-                    .ok()?
-                    .with_max_iters(10 * n_free as u64 + 50);
-                let method = ArgminTrustRegion::new(inner)
-                    .with_radius(1.0)
-                    .ok()?
-                    .with_max_radius(2.0)
-                    .ok()?;
-                let result = Executor::new(objective.clone(), method)
-                    .configure(|state| state.param(vec![0.0; n_free]).max_iters(iterations))
-                    .run()
-                    .ok()?;
-                let best = result.state().get_best_param()?;
-                Some(Round {
-                    delta: objective.to_delta(best),
-                    iterations: result.state().get_iter(),
-                })
-            },
-        )
+        in_rounds(ensemble, gauge, start, options, progress, 12, |likelihood, iterations| {
+            let objective = Objective::new(likelihood, gauge);
+            let n_free = likelihood.totals().len() - 1;
+            let inner = Steihaug::new().with_epsilon(1e-12).ok()?.with_max_iters(10 * n_free as u64 + 50);
+            let method = ArgminTrustRegion::new(inner).with_radius(1.0).ok()?.with_max_radius(2.0).ok()?;
+            let result = Executor::new(objective.clone(), method)
+                .configure(|state| state.param(vec![0.0; n_free]).max_iters(iterations))
+                .run()
+                .ok()?;
+            let best = result.state().get_best_param()?;
+            Some(Round { delta: objective.to_delta(best), iterations: result.state().get_iter() })
+        })
     }
 }

@@ -32,16 +32,12 @@ pub fn bias(restraint: &Restraint, axis: &Axis) -> Bias {
         Restraint::Linear { slope } => Some(Linear::new(slope).unwrap().into()),
         Restraint::Custom(_) => unreachable!("no such restraint in these tests"),
     };
-    Bias::new(
-        Arc::from([axis.clone()]),
-        shape.into_iter().map(|shape| Term { axis: 0, shape }).collect(),
-    )
-    .unwrap()
+    Bias::new(Arc::from([axis.clone()]), shape.into_iter().map(|shape| Term { axis: 0, shape }).collect()).unwrap()
 }
 
 pub fn condense(scheme: &CellScheme, axis: &Axis, bias: &Bias, samples: &[f64]) -> CondensedReplica {
     let axes = [axis.clone()];
-    let mut condenser = Condenser::new(scheme, &axes, bias);
+    let mut condenser = Condenser::new(scheme, &axes, bias).unwrap();
     for &x in samples {
         condenser.push(&[x]).unwrap();
     }
@@ -53,20 +49,13 @@ pub fn assemble(axis: &Axis, bins: BinGrid, biases: &[Bias], series: &[Vec<f64>]
     let condensed: Vec<CondensedReplica> = match choice {
         CellChoice::Samples => {
             let scheme = CellScheme::Samples(bins);
-            biases
-                .iter()
-                .zip(series)
-                .map(|(bias, samples)| condense(&scheme, axis, bias, samples))
-                .collect()
+            biases.iter().zip(series).map(|(bias, samples)| condense(&scheme, axis, bias, samples)).collect()
         }
         CellChoice::Lattice => {
             let breaks: Vec<f64> = biases.iter().flat_map(|bias| bias.breakpoints(0)).collect();
-            let finest = CellScheme::Lattice(CellLattice::new(bins, 12, &breaks));
-            let fine: Vec<CondensedReplica> = biases
-                .iter()
-                .zip(series)
-                .map(|(bias, samples)| condense(&finest, axis, bias, samples))
-                .collect();
+            let finest = CellScheme::lattice(CellLattice::new(bins, 12, &breaks));
+            let fine: Vec<CondensedReplica> =
+                biases.iter().zip(series).map(|(bias, samples)| condense(&finest, axis, bias, samples)).collect();
             let steepness = biases
                 .iter()
                 .zip(&fine)
@@ -101,11 +90,7 @@ pub fn sampled(
 ) -> Ensemble {
     let axis = axis(period);
     let bins = BinGrid::new(0, origin, width, period).unwrap();
-    let biases: Vec<Bias> = system
-        .windows()
-        .iter()
-        .map(|window| bias(&window.restraint, &axis))
-        .collect();
+    let biases: Vec<Bias> = system.windows().iter().map(|window| bias(&window.restraint, &axis)).collect();
     assemble(&axis, bins, &biases, &system.sample_all(seed, 0), choice)
 }
 

@@ -54,18 +54,14 @@ pub enum TableError {
 impl fmt::Display for TableError {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            Self::Columns {
-                n_positions,
-                n_energies,
-            } => write!(
+            Self::Columns { n_positions, n_energies } => write!(
                 formatter,
                 "a bias table needs one energy a position, found {n_positions} positions and \
                  {n_energies} energies"
             ),
-            Self::TooShort { found, needed } => write!(
-                formatter,
-                "a bias table with this interpolation needs at least {needed} rows, found {found}"
-            ),
+            Self::TooShort { found, needed } => {
+                write!(formatter, "a bias table with this interpolation needs at least {needed} rows, found {found}")
+            }
             Self::NotFinite { row, column, found } => write!(
                 formatter,
                 "`{column}` in row {} of a bias table must be a finite number, found {found}",

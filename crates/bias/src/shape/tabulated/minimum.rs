@@ -17,15 +17,8 @@ impl Tabulated {
             Some(period) => self.least_folded(lower, upper, period),
         };
         let (first, last) = self.range();
-        let least = if least == f64::INFINITY {
-            self.least(first, last)
-        } else {
-            least
-        };
-        let scale = self
-            .energies()
-            .iter()
-            .fold(least.abs(), |largest, energy| energy.abs().max(largest));
+        let least = if least == f64::INFINITY { self.least(first, last) } else { least };
+        let scale = self.energies().iter().fold(least.abs(), |largest, energy| energy.abs().max(largest));
         least - INTERPOLATION_ROUNDING * scale
     }
 
@@ -39,11 +32,7 @@ impl Tabulated {
         }
         let first = into_period(lower - slack, start, period);
         let last = first + length;
-        if last <= end {
-            self.least(first, last)
-        } else {
-            self.least(first, end).min(self.least(start, last - period))
-        }
+        if last <= end { self.least(first, last) } else { self.least(first, end).min(self.least(start, last - period)) }
     }
 
     /// The least energy between `lower` and `upper` in the table's own image; infinite when there is none.

@@ -8,24 +8,14 @@ const EQUAL_ENDS_TOLERANCE: f64 = 1e-6;
 /// Refuses columns that are no table: of unequal length, too short, not finite or not increasing.
 pub(super) fn check_rows(positions: &[f64], energies: &[f64], least_rows: usize) -> Result<(), TableError> {
     if positions.len() != energies.len() {
-        return Err(TableError::Columns {
-            n_positions: positions.len(),
-            n_energies: energies.len(),
-        });
+        return Err(TableError::Columns { n_positions: positions.len(), n_energies: energies.len() });
     }
     if positions.len() < least_rows {
-        return Err(TableError::TooShort {
-            found: positions.len(),
-            needed: least_rows,
-        });
+        return Err(TableError::TooShort { found: positions.len(), needed: least_rows });
     }
     for (column, values) in [("position", positions), ("energy", energies)] {
         if let Some(row) = values.iter().position(|value| !value.is_finite()) {
-            return Err(TableError::NotFinite {
-                row,
-                column,
-                found: values[row],
-            });
+            return Err(TableError::NotFinite { row, column, found: values[row] });
         }
     }
     check_increasing(positions)

@@ -73,9 +73,6 @@ impl Segment {
         // Both roots without cancellation: q/A and C/q with q = −(B/2 + sign(B) √((B/2)² − A C)).
         let root = (half_linear * half_linear - quadratic * constant).sqrt();
         let q = -(half_linear + root.copysign(half_linear));
-        [
-            self.start + length * (q / quadratic),
-            self.start + length * (constant / q),
-        ]
+        [self.start + length * (q / quadratic), self.start + length * (constant / q)]
     }
 }

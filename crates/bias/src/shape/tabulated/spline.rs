@@ -42,11 +42,7 @@ pub(super) fn periodic(positions: &[f64], energies: &[f64]) -> Vec<f64> {
         let response = solve_tridiagonal(&diagonal, &steps[..n - 1], &change);
         let project = |vector: &[f64]| vector[0] + corner / shift * vector[n - 1];
         let factor = project(&plain) / (1.0 + project(&response));
-        plain
-            .iter()
-            .zip(&response)
-            .map(|(plain, response)| plain - factor * response)
-            .collect()
+        plain.iter().zip(&response).map(|(plain, response)| plain - factor * response).collect()
     };
     curvatures.push(curvatures[0]);
     curvatures
@@ -54,11 +50,7 @@ pub(super) fn periodic(positions: &[f64], energies: &[f64]) -> Vec<f64> {
 
 fn steps_and_chords(positions: &[f64], energies: &[f64]) -> (Vec<f64>, Vec<f64>) {
     let steps: Vec<f64> = positions.windows(2).map(|pair| pair[1] - pair[0]).collect();
-    let chords = energies
-        .windows(2)
-        .zip(&steps)
-        .map(|(pair, step)| (pair[1] - pair[0]) / step)
-        .collect();
+    let chords = energies.windows(2).zip(&steps).map(|(pair, step)| (pair[1] - pair[0]) / step).collect();
     (steps, chords)
 }
 

@@ -121,16 +121,7 @@ impl Tabulated {
             Interpolation::Cubic if closed => spline::periodic(&positions, &energies),
             Interpolation::Cubic => spline::natural(&positions, &energies),
         };
-        Ok(Self {
-            positions,
-            energies,
-            interpolation,
-            outside,
-            period: axis.period(),
-            image_start,
-            closed,
-            curvatures,
-        })
+        Ok(Self { positions, energies, interpolation, outside, period: axis.period(), image_start, closed, curvatures })
     }
 
     /// The positions of the rows, in the unit of the axis.
@@ -193,16 +184,15 @@ impl Tabulated {
 
     /// Between two rows the curvature is linear, so the largest is found at a row.
     pub(in crate::shape) fn largest_curvature(&self) -> f64 {
-        self.curvatures
-            .iter()
-            .fold(0.0, |largest, curvature| curvature.abs().max(largest))
+        self.curvatures.iter().fold(0.0, |largest, curvature| curvature.abs().max(largest))
     }
 
     pub(in crate::shape) fn breakpoints(&self) -> Vec<f64> {
         let (first, last) = self.range();
         let mut breakpoints = match (self.interpolation, self.outside) {
             (Interpolation::Linear, _) => self.positions.clone(),
-            (Interpolation::Cubic, OutsideRule::Hold) if !self.closed => vec![first, last],
+            // Beyond its ends the table is flat, or not at all: a cell that straddles one would speak for samples outside.
+            (Interpolation::Cubic, OutsideRule::Hold | OutsideRule::Error) if !self.closed => vec![first, last],
             (Interpolation::Cubic, _) => Vec::new(),
         };
         if self.period.is_some() && !self.closed {

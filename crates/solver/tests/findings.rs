@@ -1,0 +1,159 @@
+//! Findings just below, at and just above their thresholds, and where they stay silent.
+#![expect(clippy::unwrap_used, reason = "a test may fail loudly")]
+
+mod common;
+
+use common::{CellChoice, assemble, axis, bias, sampled, solved};
+use spandrel_bias::Bias;
+use spandrel_solver::condense::BinGrid;
+use spandrel_solver::ensemble::Ensemble;
+use spandrel_solver::findings::{Finding, Severity, look_at_ensemble, look_at_links, look_at_profile};
+use spandrel_solver::influence::Influence;
+use spandrel_solver::profile::{Profile, ProfileRequest, Zero};
+use spandrel_solver::solve::{Link, Links, SolveOptions};
+use spandrel_testkit::{Restraint, cases};
+
+fn codes(findings: &[Finding]) -> Vec<&'static str> {
+    findings.iter().map(Finding::code).collect()
+}
+
+fn small_ensemble() -> Ensemble {
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.25, None).unwrap();
+    let restraint = |center| Restraint::Harmonic { center, force_constant: 3.0 };
+    let biases: Vec<Bias> = [0.1, 0.4].iter().map(|&center| bias(&restraint(center), &axis)).collect();
+    let series: Vec<Vec<f64>> =
+        [0.1, 0.4].iter().map(|center| (0..900).map(|i| center + 0.5 * (f64::from(i) * 2.4).sin()).collect()).collect();
+    assemble(&axis, bins, &biases, &series, &CellChoice::Lattice)
+}
+
+fn draw(ensemble: &Ensemble) -> Profile {
+    let solution = solved(ensemble, &SolveOptions::default());
+    let influence = Influence::of(ensemble, &solution).unwrap();
+    let request = ProfileRequest { first_bin: None, last_bin: None, zero: Zero::Minimum };
+    Profile::draw(ensemble, &influence, &request).unwrap()
+}
+
+#[test]
+fn few_effective_samples_begin_just_below_twenty() {
+    let mut ensemble = small_ensemble();
+    for (effective_samples, expected) in [(19.99, 1), (20.0, 0), (20.01, 0)] {
+        ensemble.windows[1].effective_samples = effective_samples;
+        let findings = look_at_ensemble(&ensemble);
+        assert_eq!(codes(&findings), vec!["few-effective-samples"; expected], "{effective_samples}");
+        assert!(findings.iter().all(|finding| finding.windows() == ["w1"] && finding.severity() == Severity::Note));
+    }
+}
+
+#[test]
+fn a_link_is_thin_just_below_twenty_samples() {
+    let ensemble = small_ensemble();
+    let mut links = Links::find(&ensemble);
+    for (linking_samples, expected) in [(19.99, 1), (20.0, 0), (20.01, 0)] {
+        links.tree = vec![Link { windows: (0, 1), difference: 0.1, linking_samples }];
+        let findings = look_at_links(&ensemble, &links);
+        assert_eq!(codes(&findings), vec!["thin-link"; expected], "{linking_samples}");
+        if let [finding] = findings.as_slice() {
+            let record = finding.record();
+            assert_eq!((record.measured, record.threshold), (Some(19.99), Some(20.0)));
+            assert_eq!(record.windows, ["w0", "w1"]);
+        }
+    }
+}
+
+#[test]
+fn windows_are_linked_from_one_effective_sample_on() {
+    let ensemble = small_ensemble();
+    let linked = Links::find(&ensemble);
+    assert_eq!(linked.groups.len(), 1);
+    // The same samples, counted as fewer and fewer independent ones, until all that the two answer for of each other is below one.
+    let mut thinned = ensemble.clone();
+    let strength = linked.tree[0].linking_samples;
+    for (factor, groups) in [(1.0 + 1e-6, 1), (1.0 - 1e-6, 2)] {
+        for (thin, window) in thinned.windows.iter_mut().zip(&ensemble.windows) {
+            thin.effective_samples = window.effective_samples / strength * factor;
+        }
+        assert_eq!(Links::find(&thinned).groups.len(), groups, "{factor}");
+    }
+    let findings = look_at_links(&thinned, &Links::find(&thinned));
+    assert_eq!(codes(&findings), ["not-linked"]);
+    assert_eq!(findings[0].severity(), Severity::Error);
+}
+
+#[test]
+fn a_frozen_window_is_named() {
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.25, None).unwrap();
+    let biases = [bias(&Restraint::None, &axis), bias(&Restraint::None, &axis)];
+    let moving: Vec<f64> = (0..300).map(|i| 0.3 * (f64::from(i) * 1.3).sin()).collect();
+    let ensemble = assemble(&axis, bins, &biases, &[moving, vec![0.1; 300]], &CellChoice::Lattice);
+    let findings = look_at_ensemble(&ensemble);
+    assert_eq!(codes(&findings), ["no-error-support"]);
+    assert_eq!(findings[0].windows(), ["w1"]);
+    // It counts as a single sample wherever independent samples are counted.
+    assert!((ensemble.windows[1].effective_samples - 1.0).abs() < f64::EPSILON);
+}
+
+#[test]
+fn empty_bins_are_one_finding_a_stretch() {
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.25, None).unwrap();
+    let places = [0.1, 1.1, 1.3, 2.6];
+    let series: Vec<f64> = (0..800).map(|i| places[i % 4] + 0.01 * (i as f64 * 0.3).sin()).collect();
+    let ensemble = assemble(&axis, bins, &[bias(&Restraint::None, &axis)], &[series], &CellChoice::Lattice);
+    let findings = look_at_profile(&draw(&ensemble));
+    let stretches: Vec<(f64, f64, usize)> = findings
+        .iter()
+        .filter_map(|finding| match *finding {
+            Finding::UnsampledBins { from, to, bins } => Some((from, to, bins)),
+            _ => None,
+        })
+        .collect();
+    assert_eq!(stretches, [(0.25, 1.0, 3), (1.5, 2.5, 4)]);
+}
+
+#[test]
+fn bins_with_a_handful_of_samples_have_no_error_and_are_counted() {
+    // 500 samples spread over one bin, and four or five independent ones in another.
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 1.0, None).unwrap();
+    for (rare, expected) in [(4, vec!["error-not-determined"]), (6, vec![])] {
+        let mut series: Vec<f64> = (0..500).map(|i| 0.5 + 0.4 * (f64::from(i) * 2.1).sin()).collect();
+        for i in 0..rare {
+            series[70 * i + 9] = 1.5;
+        }
+        let ensemble = assemble(&axis, bins, &[bias(&Restraint::None, &axis)], &[series], &CellChoice::Lattice);
+        assert_eq!(codes(&look_at_profile(&draw(&ensemble))), expected, "{rare} rare samples");
+    }
+}
+
+#[test]
+fn a_clean_set_gives_no_finding() {
+    let case = cases::independent().unwrap();
+    let ensemble = sampled(&case.system, None, case.edges[0], 0.05, 31, &CellChoice::Lattice);
+    let links = Links::find(&ensemble);
+    assert_eq!(look_at_ensemble(&ensemble), []);
+    assert_eq!(look_at_links(&ensemble, &links), []);
+}
+
+#[test]
+fn every_finding_says_what_to_do() {
+    let all = [
+        Finding::CutLastLine { window: "w".into(), file: "w.txt".into(), line: 7 },
+        Finding::RepeatedFrames { window: "w".into(), file: "w.txt".into(), line: 7, frames: 3 },
+        Finding::FewEffectiveSamples { window: "w".into(), effective_samples: 8.2 },
+        Finding::NoErrorSupport { window: "w".into(), samples: 5 },
+        Finding::NotLinked { below: "v".into(), above: "w".into(), range: Some((0.25, 0.5)) },
+        Finding::ThinLink { windows: ("v".into(), "w".into()), linking_samples: 3.1 },
+        Finding::UnsampledBins { from: 0.5, to: 1.0, bins: 2 },
+        Finding::ErrorNotDetermined { bins: 2, of: 9 },
+    ];
+    let mut seen = codes(&all);
+    seen.sort_unstable();
+    seen.dedup();
+    assert_eq!(seen.len(), all.len());
+    for finding in &all {
+        let record = finding.record();
+        assert!(!record.message.is_empty() && !record.advice.is_empty() && !record.message.contains("NaN"));
+    }
+}
