@@ -87,12 +87,7 @@ impl<'a> Chunk<'a> {
     /// Where one row stands, for a fault that only the caller can see; `None` beyond the last row.
     #[must_use]
     pub fn place(&self, row: usize) -> Option<Place> {
-        self.lines.get(row).map(|&line| Place {
-            path: self.path.to_owned(),
-            line,
-            column: None,
-            character: None,
-        })
+        self.lines.get(row).map(|&line| Place { path: self.path.to_owned(), line, column: None, character: None })
     }
 
     /// How many bytes of the file have been taken from the disk so far. For progress only: it runs ahead of the rows.

@@ -90,12 +90,7 @@ fn read_blank_separated<'l>(line: &'l [u8], mut wanted: &[Wanted], values: &mut 
                 _ => {
                     let end = blank_after(line, at);
                     let text = &line[at..end];
-                    let value = parse_number(text).map_err(|problem| BadField {
-                        field,
-                        offset: at,
-                        text,
-                        problem,
-                    })?;
+                    let value = parse_number(text).map_err(|problem| BadField { field, offset: at, text, problem })?;
                     (value, end)
                 }
             };
@@ -109,10 +104,7 @@ fn read_blank_separated<'l>(line: &'l [u8], mut wanted: &[Wanted], values: &mut 
 }
 
 fn blank_after(line: &[u8], at: usize) -> usize {
-    line[at..]
-        .iter()
-        .position(|&byte| is_blank(byte))
-        .map_or(line.len(), |length| at + length)
+    line[at..].iter().position(|&byte| is_blank(byte)).map_or(line.len(), |length| at + length)
 }
 
 fn read_delimited<'l>(
@@ -125,28 +117,16 @@ fn read_delimited<'l>(
     let mut field = 0;
     loop {
         let is_wanted = wanted.first().is_some_and(|first| first.field == field);
-        let everyday = if is_wanted {
-            everyday_number(line, at, delimiter)
-        } else {
-            None
-        };
+        let everyday = if is_wanted { everyday_number(line, at, delimiter) } else { None };
         let end = if let Some((value, end)) = everyday {
             store(&mut wanted, field, value, values);
             end
         } else {
             let found = delimited_field(line, at, delimiter);
             if is_wanted {
-                let parsed = if found.is_closed {
-                    parse_number(found.text)
-                } else {
-                    Err(NumberProblem::UnclosedQuote)
-                };
-                let value = parsed.map_err(|problem| BadField {
-                    field,
-                    offset: found.offset,
-                    text: found.text,
-                    problem,
-                })?;
+                let parsed = if found.is_closed { parse_number(found.text) } else { Err(NumberProblem::UnclosedQuote) };
+                let value =
+                    parsed.map_err(|problem| BadField { field, offset: found.offset, text: found.text, problem })?;
                 store(&mut wanted, field, value, values);
             }
             found.end
@@ -165,9 +145,7 @@ fn everyday_number(line: &[u8], at: usize, delimiter: u8) -> Option<(f64, usize)
     let begin = skip_blanks(line, at, delimiter);
     let (value, length) = leading_number(&line[begin..])?;
     let end = skip_blanks(line, begin + length, delimiter);
-    line.get(end)
-        .is_none_or(|&byte| byte == delimiter)
-        .then_some((value, end))
+    line.get(end).is_none_or(|&byte| byte == delimiter).then_some((value, end))
 }
 
 fn skip_blanks(line: &[u8], mut at: usize, delimiter: u8) -> usize {
@@ -206,12 +184,7 @@ fn delimited_field(line: &[u8], at: usize, delimiter: u8) -> DelimitedField<'_> 
     }
     let end = memchr::memchr(delimiter, &line[begin..]).map_or(line.len(), |length| begin + length);
     let text = line[begin..end].trim_ascii_end();
-    DelimitedField {
-        offset: begin,
-        text,
-        end,
-        is_closed: !text.starts_with(b"\""),
-    }
+    DelimitedField { offset: begin, text, end, is_closed: !text.starts_with(b"\"") }
 }
 
 fn closing_quote(line: &[u8], mut at: usize) -> Option<usize> {
@@ -233,11 +206,7 @@ mod tests {
         separator: Separator,
         fields: &[usize],
     ) -> Result<(usize, Vec<f64>), (usize, usize, NumberProblem)> {
-        let wanted: Vec<Wanted> = fields
-            .iter()
-            .enumerate()
-            .map(|(slot, &field)| Wanted { field, slot })
-            .collect();
+        let wanted: Vec<Wanted> = fields.iter().enumerate().map(|(slot, &field)| Wanted { field, slot }).collect();
         let mut values = vec![f64::NAN; fields.len()];
         match read_row(line.as_bytes(), separator, &wanted, &mut values) {
             Ok(count) => Ok((count, values)),
@@ -251,83 +220,44 @@ mod tests {
             numbers(" \t2.5   -3 text\t7e1 ", Separator::Whitespace, &[0, 1, 3]),
             Ok((4, vec![2.5, -3.0, 70.0]))
         );
-        assert_eq!(
-            numbers("  2.5 ,\t-3, text ,7e1\t", Separator::Comma, &[0, 1, 3]),
-            Ok((4, vec![2.5, -3.0, 70.0]))
-        );
-        assert_eq!(
-            numbers(" 2.5 \t-3\ttext\t 7e1", Separator::Tab, &[0, 1, 3]),
-            Ok((4, vec![2.5, -3.0, 70.0]))
-        );
+        assert_eq!(numbers("  2.5 ,\t-3, text ,7e1\t", Separator::Comma, &[0, 1, 3]), Ok((4, vec![2.5, -3.0, 70.0])));
+        assert_eq!(numbers(" 2.5 \t-3\ttext\t 7e1", Separator::Tab, &[0, 1, 3]), Ok((4, vec![2.5, -3.0, 70.0])));
     }
 
     #[test]
     fn one_field_can_be_wanted_twice() {
-        assert_eq!(
-            numbers("4 5 6", Separator::Whitespace, &[1, 1, 2]),
-            Ok((3, vec![5.0, 5.0, 6.0]))
-        );
-        assert_eq!(
-            numbers("4,5,6", Separator::Comma, &[1, 1, 2]),
-            Ok((3, vec![5.0, 5.0, 6.0]))
-        );
+        assert_eq!(numbers("4 5 6", Separator::Whitespace, &[1, 1, 2]), Ok((3, vec![5.0, 5.0, 6.0])));
+        assert_eq!(numbers("4,5,6", Separator::Comma, &[1, 1, 2]), Ok((3, vec![5.0, 5.0, 6.0])));
     }
 
     #[test]
     fn a_number_may_stand_in_quotes() {
-        assert_eq!(
-            numbers("\"2.5\", \" -3D2 \" ,4", Separator::Comma, &[0, 1, 2]),
-            Ok((3, vec![2.5, -300.0, 4.0]))
-        );
+        assert_eq!(numbers("\"2.5\", \" -3D2 \" ,4", Separator::Comma, &[0, 1, 2]), Ok((3, vec![2.5, -300.0, 4.0])));
     }
 
     #[test]
     fn a_delimiter_in_quotes_is_text() {
-        assert_eq!(
-            numbers("\"a,\"\"b\"\",c\",6.5", Separator::Comma, &[1]),
-            Ok((2, vec![6.5]))
-        );
+        assert_eq!(numbers("\"a,\"\"b\"\",c\",6.5", Separator::Comma, &[1]), Ok((2, vec![6.5])));
     }
 
     #[test]
     fn neighboring_delimiters_hold_an_empty_field() {
-        assert_eq!(
-            numbers("3,,4", Separator::Comma, &[1]),
-            Err((1, 2, NumberProblem::Empty))
-        );
-        assert_eq!(
-            numbers("3\t \t4", Separator::Tab, &[1]),
-            Err((1, 3, NumberProblem::Empty))
-        );
-        assert_eq!(
-            numbers("3,4,", Separator::Comma, &[2]),
-            Err((2, 4, NumberProblem::Empty))
-        );
+        assert_eq!(numbers("3,,4", Separator::Comma, &[1]), Err((1, 2, NumberProblem::Empty)));
+        assert_eq!(numbers("3\t \t4", Separator::Tab, &[1]), Err((1, 3, NumberProblem::Empty)));
+        assert_eq!(numbers("3,4,", Separator::Comma, &[2]), Err((2, 4, NumberProblem::Empty)));
         assert_eq!(numbers("3,,4,", Separator::Comma, &[2]), Ok((4, vec![4.0])));
     }
 
     #[test]
     fn a_quote_that_is_not_closed_before_the_delimiter_is_a_fault() {
-        assert_eq!(
-            numbers("1,\"2,3", Separator::Comma, &[1]),
-            Err((1, 2, NumberProblem::UnclosedQuote))
-        );
-        assert_eq!(
-            numbers("1,\"2\"x,3", Separator::Comma, &[1]),
-            Err((1, 2, NumberProblem::UnclosedQuote))
-        );
+        assert_eq!(numbers("1,\"2,3", Separator::Comma, &[1]), Err((1, 2, NumberProblem::UnclosedQuote)));
+        assert_eq!(numbers("1,\"2\"x,3", Separator::Comma, &[1]), Err((1, 2, NumberProblem::UnclosedQuote)));
     }
 
     #[test]
     fn a_number_glued_to_other_text_is_a_fault_with_its_place() {
-        assert_eq!(
-            numbers("1.5 2.5.3", Separator::Whitespace, &[1]),
-            Err((1, 4, NumberProblem::Text))
-        );
-        assert_eq!(
-            numbers("1.5, 2.5 3", Separator::Comma, &[1]),
-            Err((1, 5, NumberProblem::Text))
-        );
+        assert_eq!(numbers("1.5 2.5.3", Separator::Whitespace, &[1]), Err((1, 4, NumberProblem::Text)));
+        assert_eq!(numbers("1.5, 2.5 3", Separator::Comma, &[1]), Err((1, 5, NumberProblem::Text)));
     }
 
     #[test]

@@ -67,11 +67,7 @@ impl Headers {
                 place: Box::new(Place::line(path, row)),
                 name: name.to_owned(),
                 fields,
-                candidate: self
-                    .line
-                    .as_ref()
-                    .or(last_comment)
-                    .map(|header| (header.line, header.names.len())),
+                candidate: self.line.as_ref().or(last_comment).map(|header| (header.line, header.names.len())),
             });
         };
         header.find(name, path)
@@ -80,30 +76,18 @@ impl Headers {
 
 impl Header {
     fn new(line: u64, fields: &[&[u8]]) -> Self {
-        let names = fields
-            .iter()
-            .map(|field| String::from_utf8_lossy(field).into_owned())
-            .collect();
+        let names = fields.iter().map(|field| String::from_utf8_lossy(field).into_owned()).collect();
         Self { line, names }
     }
 
     fn find(&self, name: &str, path: &Path) -> Result<usize, IngestError> {
-        let mut bearers = self
-            .names
-            .iter()
-            .enumerate()
-            .filter(|(_, other)| *other == name)
-            .map(|(index, _)| index);
+        let mut bearers = self.names.iter().enumerate().filter(|(_, other)| *other == name).map(|(index, _)| index);
         match (bearers.next(), bearers.next()) {
             (Some(only), None) => Ok(only),
             (Some(first), Some(second)) => Err(IngestError::RepeatedName {
                 place: Box::new(Place::line(path, self.line)),
                 name: name.to_owned(),
-                columns: [first, second]
-                    .into_iter()
-                    .chain(bearers)
-                    .map(|index| index + 1)
-                    .collect(),
+                columns: [first, second].into_iter().chain(bearers).map(|index| index + 1).collect(),
             }),
             (None, _) => Err(IngestError::UnknownName {
                 place: Box::new(Place::line(path, self.line)),
@@ -119,12 +103,7 @@ impl Header {
         let mut near: Vec<(f64, &String)> = self
             .names
             .iter()
-            .map(|other| {
-                (
-                    strsim::normalized_damerau_levenshtein(&wanted, &other.to_lowercase()),
-                    other,
-                )
-            })
+            .map(|other| (strsim::normalized_damerau_levenshtein(&wanted, &other.to_lowercase()), other))
             .filter(|(likeness, _)| *likeness >= NEAR)
             .collect();
         near.sort_by(|(a, _), (b, _)| b.total_cmp(a));

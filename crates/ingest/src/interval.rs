@@ -25,10 +25,7 @@ impl UsualStep {
     pub(crate) fn find(mut self) -> Option<f64> {
         self.steps.sort_by(f64::total_cmp);
         let median = *self.steps.get(self.steps.len() / 2)?;
-        let usual = self
-            .steps
-            .iter()
-            .filter(|step| (0.5 * median..=1.5 * median).contains(*step));
+        let usual = self.steps.iter().filter(|step| (0.5 * median..=1.5 * median).contains(*step));
         let (sum, count) = usual.fold((0.0, 0_u32), |(sum, count), step| (sum + step, count + 1));
         (count > 0).then(|| sum / f64::from(count))
     }

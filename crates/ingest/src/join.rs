@@ -56,22 +56,14 @@ pub(crate) fn for_each_frame<E>(
         TimeSource::Column(column) => Some(column),
         TimeSource::Unknown | TimeSource::Interval(_) => None,
     };
-    let row_layout = RowLayout::new(
-        layout.separator,
-        &layout.comments,
-        layout.columns.iter().chain(time_column),
-    );
+    let row_layout = RowLayout::new(layout.separator, &layout.comments, layout.columns.iter().chain(time_column));
     // The time, where it is a column, stands behind the wanted values.
     let n_columns = layout.columns.len();
     let mut values = vec![0.0; n_columns + usize::from(time_column.is_some())];
     let mut timeline = Timeline::default();
     let mut usual_step = UsualStep::default();
-    let mut joined = Joined {
-        segments: Vec::with_capacity(segments.len()),
-        frames: 0,
-        interval: None,
-        notices: Vec::new(),
-    };
+    let mut joined =
+        Joined { segments: Vec::with_capacity(segments.len()), frames: 0, interval: None, notices: Vec::new() };
     for (segment, path) in segments.iter().enumerate() {
         let mut rows = Rows::open(path, &row_layout, pass.digest, pass.chunk)?;
         timeline.begin_file();
@@ -90,30 +82,21 @@ pub(crate) fn for_each_frame<E>(
                 }
             };
             joined.frames += 1;
-            visit(&Frame {
-                segment,
-                line,
-                time,
-                values: &values[..n_columns],
-                bytes_read: rows.bytes(),
-            })?;
+            visit(&Frame { segment, line, time, values: &values[..n_columns], bytes_read: rows.bytes() })?;
         }
         let times = timeline.end_file(path, || rows.column_of(n_columns))?;
         let (first_time, last_time) = match layout.time {
-            TimeSource::Interval(interval) => (
-                Some(first_frame as f64 * interval),
-                Some((joined.frames - 1) as f64 * interval),
-            ),
+            TimeSource::Interval(interval) => {
+                (Some(first_frame as f64 * interval), Some((joined.frames - 1) as f64 * interval))
+            }
             TimeSource::Unknown | TimeSource::Column(_) => (times.first, times.last),
         };
         joined.notices.append(&mut timeline.take_notices());
-        joined
-            .notices
-            .extend(rows.unfinished().map(|unfinished| Notice::UnfinishedLastLine {
-                path: path.clone(),
-                line: unfinished.line,
-                text: unfinished.text.clone(),
-            }));
+        joined.notices.extend(rows.unfinished().map(|unfinished| Notice::UnfinishedLastLine {
+            path: path.clone(),
+            line: unfinished.line,
+            text: unfinished.text.clone(),
+        }));
         joined.segments.push(SegmentReport {
             path: path.clone(),
             bytes: rows.bytes(),

@@ -27,6 +27,7 @@ mod lines;
 mod notice;
 mod number;
 mod picker;
+mod readable_path;
 mod report;
 mod rows;
 mod selection;

@@ -115,12 +115,7 @@ impl<'p> Lines<'p> {
         if !is_sound {
             self.refuse_zero_byte(line_end)?;
         }
-        self.present = Present {
-            start: self.start,
-            end: line_end,
-            is_complete: found.is_some(),
-            is_sound,
-        };
+        self.present = Present { start: self.start, end: line_end, is_complete: found.is_some(), is_sound };
         self.start = next;
         self.searched = next;
         self.count += u64::from(found.is_some());
@@ -130,22 +125,12 @@ impl<'p> Lines<'p> {
     /// The line that was last moved to.
     #[inline]
     pub(crate) fn line(&self) -> Line<'_> {
-        let Present {
-            start,
-            end,
-            is_complete,
-            is_sound,
-        } = self.present;
+        let Present { start, end, is_complete, is_sound } = self.present;
         let mut text = &self.buffer[start..end];
         while let [rest @ .., b'\r'] = text {
             text = rest;
         }
-        Line {
-            number: self.count + u64::from(!is_complete),
-            text,
-            is_complete,
-            is_sound,
-        }
+        Line { number: self.count + u64::from(!is_complete), text, is_complete, is_sound }
     }
 
     fn pass_byte_order_mark(&mut self) -> Result<(), IngestError> {
@@ -217,11 +202,7 @@ impl Line<'_> {
     /// Refuses text that is not valid UTF-8.
     #[inline]
     pub(crate) fn refuse_invalid_text(&self, path: &Path) -> Result<(), IngestError> {
-        if self.is_sound {
-            Ok(())
-        } else {
-            self.find_invalid_text(path)
-        }
+        if self.is_sound { Ok(()) } else { self.find_invalid_text(path) }
     }
 
     #[cold]

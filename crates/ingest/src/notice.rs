@@ -5,7 +5,7 @@ use std::path::PathBuf;
 
 use serde::Serialize;
 
-use crate::report::readable_path;
+use crate::readable_path::readable_path;
 
 /// Something that was left out of a series and that its owner should know of.
 ///
@@ -64,18 +64,10 @@ impl Notice {
 impl fmt::Display for Notice {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            Self::UnfinishedLastLine { path, line, text } => write!(
-                formatter,
-                "{}:{line}: the last line has no line end and was left out: `{text}`",
-                path.display()
-            ),
-            Self::RepeatedFrames {
-                path,
-                first_line,
-                count,
-                first_time,
-                last_time,
-            } => write!(
+            Self::UnfinishedLastLine { path, line, text } => {
+                write!(formatter, "{}:{line}: the last line has no line end and was left out: `{text}`", path.display())
+            }
+            Self::RepeatedFrames { path, first_line, count, first_time, last_time } => write!(
                 formatter,
                 "{}:{first_line}: {count} rows from time {first_time} to {last_time} repeat earlier frames and were left out",
                 path.display()

@@ -33,9 +33,7 @@ pub(crate) fn parse_number(field: &[u8]) -> Result<f64, NumberProblem> {
     if is_spelled_not_finite(field) {
         return Err(NumberProblem::NotFinite);
     }
-    rewrite_exponent(field)
-        .and_then(|rewritten| whole_number(&rewritten))
-        .unwrap_or(Err(NumberProblem::Text))
+    rewrite_exponent(field).and_then(|rewritten| whole_number(&rewritten)).unwrap_or(Err(NumberProblem::Text))
 }
 
 /// Whether a field is, or was meant as, a number; a header has no such field.
@@ -86,10 +84,7 @@ fn rewrite_exponent(field: &[u8]) -> Option<Vec<u8>> {
     if field.len() > LONGEST_REWRITTEN {
         return None;
     }
-    let mantissa_end = 1 + field
-        .iter()
-        .skip(1)
-        .position(|byte| matches!(byte, b'd' | b'D' | b'+' | b'-'))?;
+    let mantissa_end = 1 + field.iter().skip(1).position(|byte| matches!(byte, b'd' | b'D' | b'+' | b'-'))?;
     let (mantissa, exponent) = field.split_at(mantissa_end);
     let exponent = match exponent {
         [b'd' | b'D', rest @ ..] => rest,
@@ -97,10 +92,7 @@ fn rewrite_exponent(field: &[u8]) -> Option<Vec<u8>> {
         _ => return None,
     };
     // `1.0e5d3` or `1.0e+5` must not slip through: the mantissa is plain digits with at most one sign and one point.
-    let plain = mantissa
-        .iter()
-        .enumerate()
-        .all(|(index, byte)| byte.is_ascii_digit() || *byte == b'.' || index == 0);
+    let plain = mantissa.iter().enumerate().all(|(index, byte)| byte.is_ascii_digit() || *byte == b'.' || index == 0);
     if !plain {
         return None;
     }
@@ -121,9 +113,7 @@ mod tests {
     /// Every way of writing a finite number that `str::parse` knows, from random digits.
     fn written_number() -> impl Strategy<Value = String> {
         prop_oneof![
-            any::<f64>()
-                .prop_filter("finite", |value| value.is_finite())
-                .prop_map(|value| format!("{value:e}")),
+            any::<f64>().prop_filter("finite", |value| value.is_finite()).prop_map(|value| format!("{value:e}")),
             (-1e6..1e6_f64, 0..20_usize).prop_map(|(value, digits)| format!("{value:.digits$}")),
             (-1e6..1e6_f64, 0..20_usize).prop_map(|(value, digits)| format!("{value:.digits$E}")),
             "[+-]?[0-9]{1,40}(\\.[0-9]{0,40})?([eE][+-]?[0-9]{1,3})?",

@@ -103,10 +103,7 @@ impl<'a, E> Picker<'a, E> {
     /// Hands over what remains.
     pub(crate) fn finish(mut self) -> Result<Picked, ReadError<E>> {
         self.hand_over_rest()?;
-        Ok(Picked {
-            discarded: self.discarded,
-            kept: self.kept,
-        })
+        Ok(Picked { discarded: self.discarded, kept: self.kept })
     }
 
     fn is_kept(&mut self, time: Option<f64>) -> bool {
@@ -132,11 +129,7 @@ impl<'a, E> Picker<'a, E> {
     }
 
     fn hand_over_rest(&mut self) -> Result<(), ReadError<E>> {
-        if self.lines.is_empty() {
-            Ok(())
-        } else {
-            self.hand_over()
-        }
+        if self.lines.is_empty() { Ok(()) } else { self.hand_over() }
     }
 
     fn hand_over(&mut self) -> Result<(), ReadError<E>> {

@@ -1,10 +1,11 @@
 //! What was read, and what was worth a notice.
 
-use std::path::{Path, PathBuf};
+use std::path::PathBuf;
 
-use serde::{Serialize, Serializer};
+use serde::Serialize;
 
 use crate::notice::Notice;
+use crate::readable_path::readable_path;
 
 /// What was read of a whole series.
 #[derive(Debug, Clone, PartialEq, Serialize)]
@@ -49,9 +50,4 @@ pub struct SegmentReport {
     pub first_time: Option<f64>,
     /// The time of the last row in the file, where times are known.
     pub last_time: Option<f64>,
-}
-
-/// Writes a path that is not valid Unicode with replacement characters instead of failing.
-pub(crate) fn readable_path<S: Serializer>(path: &Path, serializer: S) -> Result<S::Ok, S::Error> {
-    serializer.serialize_str(&path.to_string_lossy())
 }

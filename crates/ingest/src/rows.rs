@@ -33,12 +33,7 @@ impl<'l> RowLayout<'l> {
         for first in prefixes.iter().filter_map(|prefix| prefix.first()) {
             begins_prefix[usize::from(*first)] = true;
         }
-        Self {
-            separator,
-            prefixes,
-            begins_prefix,
-            columns: columns.into_iter().collect(),
-        }
+        Self { separator, prefixes, begins_prefix, columns: columns.into_iter().collect() }
     }
 
     #[inline]
@@ -130,10 +125,7 @@ impl<'l> Rows<'l> {
                 Content::Data(text) => text,
             };
             if !line.is_complete {
-                self.unfinished = Some(Unfinished {
-                    line: line.number,
-                    text: excerpt(text),
-                });
+                self.unfinished = Some(Unfinished { line: line.number, text: excerpt(text) });
                 break;
             }
             line.refuse_invalid_text(path)?;
@@ -208,11 +200,7 @@ impl Shape {
             wanted.push(Wanted { field, slot });
         }
         wanted.sort_unstable();
-        Ok(Self {
-            first_line: line,
-            fields,
-            wanted,
-        })
+        Ok(Self { first_line: line, fields, wanted })
     }
 
     #[inline]

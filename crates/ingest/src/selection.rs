@@ -34,10 +34,7 @@ pub struct Selection {
 impl Default for Selection {
     /// Every frame.
     fn default() -> Self {
-        Self {
-            discard: Discard::Nothing,
-            stride: NonZeroU64::MIN,
-        }
+        Self { discard: Discard::Nothing, stride: NonZeroU64::MIN }
     }
 }
 
@@ -50,20 +47,14 @@ impl Selection {
         let (allowed, expected, found) = match self.discard {
             Discard::Nothing | Discard::Frames(_) => return Ok(()),
             Discard::Time(time) => (time >= 0.0 && time.is_finite(), "a finite time of at least 0", time),
-            Discard::Fraction(fraction) => (
-                (0.0..1.0).contains(&fraction),
-                "a fraction of at least 0 and below 1",
-                fraction,
-            ),
+            Discard::Fraction(fraction) => {
+                ((0.0..1.0).contains(&fraction), "a fraction of at least 0 and below 1", fraction)
+            }
         };
         if allowed {
             Ok(())
         } else {
-            Err(IngestError::Setting {
-                setting: "discard",
-                expected,
-                found: found.to_string(),
-            })
+            Err(IngestError::Setting { setting: "discard", expected, found: found.to_string() })
         }
     }
 }

@@ -79,11 +79,7 @@ pub(crate) fn read_in_pieces<E>(
         }
         Discard::Time(time) => Start::Time(time),
         Discard::Fraction(fraction) => {
-            let frames = if fraction > 0.0 {
-                count_frames(segments, layout, chunk, sink)?
-            } else {
-                0
-            };
+            let frames = if fraction > 0.0 { count_frames(segments, layout, chunk, sink)? } else { 0 };
             Start::Frame(part_of(fraction, frames))
         }
     };
@@ -92,29 +88,14 @@ pub(crate) fn read_in_pieces<E>(
     let pass = Pass { digest: true, chunk };
     let joined = for_each_frame(segments, layout, pass, |frame| picker.take(frame))?;
     let picked = picker.finish()?;
-    let Joined {
-        segments: mut reports,
-        frames,
-        interval,
-        notices,
-    } = joined;
+    let Joined { segments: mut reports, frames, interval, notices } = joined;
     for (report, &kept) in reports.iter_mut().zip(&picked.kept) {
         report.rows_kept = kept;
     }
     let kept = picked.kept.iter().sum();
     match segments.first() {
-        Some(path) if kept == 0 => Err(ReadError::Ingest(IngestError::AllDiscarded {
-            path: path.clone(),
-            frames,
-        })),
-        _ => Ok(SeriesReport {
-            segments: reports,
-            frames,
-            discarded: picked.discarded,
-            kept,
-            interval,
-            notices,
-        }),
+        Some(path) if kept == 0 => Err(ReadError::Ingest(IngestError::AllDiscarded { path: path.clone(), frames })),
+        _ => Ok(SeriesReport { segments: reports, frames, discarded: picked.discarded, kept, interval, notices }),
     }
 }
 
@@ -125,10 +106,7 @@ fn count_frames<E>(
     chunk: usize,
     sink: &mut dyn FnMut(&Chunk<'_>) -> Result<(), E>,
 ) -> Result<u64, ReadError<E>> {
-    let layout = Layout {
-        columns: Vec::new(),
-        ..layout.clone()
-    };
+    let layout = Layout { columns: Vec::new(), ..layout.clone() };
     let pass = Pass { digest: false, chunk };
     // A picker whose start is never reached hands over empty chunks only.
     let mut picker = Picker::new(segments, 0, Start::Frame(u64::MAX), 1, sink);

@@ -50,11 +50,7 @@ impl Source {
             return Err(IngestError::Directory { path: path.to_owned() });
         }
         let file = File::open(path).map_err(|error| disk_fault(path, &error))?;
-        let mut file = Digested {
-            file,
-            digest: digest.then(Sha256::new),
-            bytes: 0,
-        };
+        let mut file = Digested { file, digest: digest.then(Sha256::new), bytes: 0 };
         let mut beginning = Vec::with_capacity(GZIP_MAGIC.len());
         (&mut file)
             .take(GZIP_MAGIC.len() as u64)
@@ -84,15 +80,12 @@ impl Source {
                 Err(error) => error,
             };
             return Err(match (&self.stream, error.kind()) {
-                (Stream::Gzip(_), ErrorKind::UnexpectedEof) => IngestError::GzipCutShort {
-                    path: path.to_owned(),
-                    lines,
-                },
-                (Stream::Gzip(_), ErrorKind::InvalidInput | ErrorKind::InvalidData) => IngestError::GzipCorrupt {
-                    path: path.to_owned(),
-                    lines,
-                    reason: error.to_string(),
-                },
+                (Stream::Gzip(_), ErrorKind::UnexpectedEof) => {
+                    IngestError::GzipCutShort { path: path.to_owned(), lines }
+                }
+                (Stream::Gzip(_), ErrorKind::InvalidInput | ErrorKind::InvalidData) => {
+                    IngestError::GzipCorrupt { path: path.to_owned(), lines, reason: error.to_string() }
+                }
                 _ => disk_fault(path, &error),
             });
         }
@@ -130,9 +123,6 @@ fn disk_fault(path: &Path, error: &std::io::Error) -> IngestError {
     match error.kind() {
         ErrorKind::NotFound => IngestError::Missing { path },
         ErrorKind::IsADirectory => IngestError::Directory { path },
-        _ => IngestError::Unreadable {
-            path,
-            reason: error.to_string(),
-        },
+        _ => IngestError::Unreadable { path, reason: error.to_string() },
     }
 }

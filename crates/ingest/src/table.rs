@@ -86,10 +86,7 @@ fn read_table_up_to(limit: usize, path: &Path, layout: &TableLayout) -> Result<T
     let mut values = [0.0; 2];
     while let Some(line) = rows.next_row(&mut values)? {
         if lines.len() == limit {
-            return Err(IngestError::TableTooLong {
-                place: Box::new(Place::line(path, line)),
-                limit,
-            });
+            return Err(IngestError::TableTooLong { place: Box::new(Place::line(path, line)), limit });
         }
         first.push(values[0]);
         second.push(values[1]);
@@ -100,13 +97,6 @@ fn read_table_up_to(limit: usize, path: &Path, layout: &TableLayout) -> Result<T
             place: Box::new(Place::line(path, unfinished.line)),
             found: unfinished.text.clone(),
         }),
-        None => Ok(Table {
-            path: path.to_owned(),
-            first,
-            second,
-            lines,
-            bytes: rows.bytes(),
-            sha256: rows.sha256(),
-        }),
+        None => Ok(Table { path: path.to_owned(), first, second, lines, bytes: rows.bytes(), sha256: rows.sha256() }),
     }
 }

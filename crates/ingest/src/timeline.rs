@@ -104,12 +104,7 @@ impl Timeline {
                 stretch.last_time = time;
             }
             none => {
-                *none = Some(Stretch {
-                    first_line: line,
-                    count: 1,
-                    first_time: time,
-                    last_time: time,
-                });
+                *none = Some(Stretch { first_line: line, count: 1, first_time: time, last_time: time });
             }
         }
         Ok(false)
@@ -129,18 +124,9 @@ impl Timeline {
         if let (Some(previous_end), Some(first_time), Some(last_time)) = (self.latest_before, file.first, file.last)
             && file.repeated == file.rows
         {
-            return Err(IngestError::NotAContinuation {
-                path: path.to_owned(),
-                first_time,
-                last_time,
-                previous_end,
-            });
+            return Err(IngestError::NotAContinuation { path: path.to_owned(), first_time, last_time, previous_end });
         }
-        Ok(FileSummary {
-            first: file.first,
-            last: file.last,
-            repeated: file.repeated,
-        })
+        Ok(FileSummary { first: file.first, last: file.last, repeated: file.repeated })
     }
 
     /// The notices since this was last asked.
@@ -150,10 +136,8 @@ impl Timeline {
 
     /// One notice for all stretches beyond the first hundred.
     pub(crate) fn closing_notice(&self) -> Option<Notice> {
-        (self.stretches_unnoted > 0).then_some(Notice::MoreRepeatedFrames {
-            stretches: self.stretches_unnoted,
-            count: self.rows_unnoted,
-        })
+        (self.stretches_unnoted > 0)
+            .then_some(Notice::MoreRepeatedFrames { stretches: self.stretches_unnoted, count: self.rows_unnoted })
     }
 
     fn end_stretch(&mut self, path: &Path) {
@@ -180,10 +164,7 @@ impl FileTimes {
     fn refuse_frequent_falls(&self, path: &Path, column: Option<usize>) -> Result<(), IngestError> {
         match self.last_fall {
             Some(fall) if self.falls * ROWS_A_FALL > self.rows => Err(IngestError::TimeNotIncreasing {
-                place: Box::new(Place {
-                    column,
-                    ..Place::line(path, fall.line)
-                }),
+                place: Box::new(Place { column, ..Place::line(path, fall.line) }),
                 found: fall.time,
                 previous: fall.previous,
                 falls: self.falls,

@@ -7,19 +7,11 @@ pub fn autocorrelation(series: &[f64], largest_lag: usize) -> Vec<f64> {
     let n = series.len();
     let mean = series.iter().sum::<f64>() / n as f64;
     let centered: Vec<f64> = series.iter().map(|x| x - mean).collect();
-    let product = |lag: usize| {
-        centered
-            .iter()
-            .zip(&centered[lag..])
-            .map(|(early, late)| early * late)
-            .sum::<f64>()
-    };
+    let product = |lag: usize| centered.iter().zip(&centered[lag..]).map(|(early, late)| early * late).sum::<f64>();
     if n == 0 || product(0) <= 0.0 {
         return Vec::new();
     }
-    (0..=largest_lag.min(n - 1))
-        .map(|lag| product(lag) / product(0))
-        .collect()
+    (0..=largest_lag.min(n - 1)).map(|lag| product(lag) / product(0)).collect()
 }
 
 #[cfg(test)]

@@ -37,11 +37,7 @@ pub fn bennett_difference(difference_in_0: &[f64], difference_in_1: &[f64]) -> O
 
 /// 1/(1 + exp(x)) without overflow.
 fn fermi(x: f64) -> f64 {
-    if x > 0.0 {
-        (-x).exp() / (1.0 + (-x).exp())
-    } else {
-        1.0 / (1.0 + x.exp())
-    }
+    if x > 0.0 { (-x).exp() / (1.0 + (-x).exp()) } else { 1.0 / (1.0 + x.exp()) }
 }
 
 #[cfg(test)]
@@ -99,10 +95,7 @@ mod tests {
             .map(|replicate| {
                 let samples = system.sample_all(3, replicate);
                 let difference = |series: &[f64]| {
-                    series
-                        .iter()
-                        .map(|&x| system.bias_energy(1, x) - system.bias_energy(0, x))
-                        .collect::<Vec<_>>()
+                    series.iter().map(|&x| system.bias_energy(1, x) - system.bias_energy(0, x)).collect::<Vec<_>>()
                 };
                 bennett_difference(&difference(&samples[0]), &difference(&samples[1])).unwrap() - truth
             })
@@ -111,9 +104,6 @@ mod tests {
         let variance = errors.iter().map(|error| (error - mean).powi(2)).sum::<f64>() / (replicates - 1) as f64;
         let standard_error = (variance / replicates as f64).sqrt();
         assert!(standard_error < 0.02, "the check has no power: {standard_error}");
-        assert!(
-            mean.abs() < tolerance::STANDARD_ERRORS * standard_error,
-            "{mean} ± {standard_error}"
-        );
+        assert!(mean.abs() < tolerance::STANDARD_ERRORS * standard_error, "{mean} ± {standard_error}");
     }
 }

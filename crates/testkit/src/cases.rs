@@ -27,15 +27,9 @@ impl Case {
     pub fn first_windows(self, n_windows: usize) -> Self {
         let system = self.system.first_windows(n_windows);
         let last = system.windows().last();
-        let end = last
-            .and_then(|window| window.restraint.center())
-            .unwrap_or(f64::INFINITY);
+        let end = last.and_then(|window| window.restraint.center()).unwrap_or(f64::INFINITY);
         let edges = self.edges.into_iter().filter(|edge| *edge <= end).collect();
-        Self {
-            name: self.name,
-            system,
-            edges,
-        }
+        Self { name: self.name, system, edges }
     }
 }
 
@@ -52,11 +46,7 @@ pub fn independent() -> Result<Case, SystemError> {
 /// # Errors
 /// None in practice; the constructor of the system is fallible.
 pub fn two_times() -> Result<Case, SystemError> {
-    let correlation = Correlation::TwoTimes {
-        slow_share: 0.2,
-        fast_time: 2.0,
-        slow_time: 100.0,
-    };
+    let correlation = Correlation::TwoTimes { slow_share: 0.2, fast_time: 2.0, slow_time: 100.0 };
     rippled_double_well("two_times", 5000, correlation)
 }
 
@@ -65,11 +55,7 @@ pub fn two_times() -> Result<Case, SystemError> {
 /// # Errors
 /// None in practice; the constructor of the system is fallible.
 pub fn two_times_long_runs() -> Result<Case, SystemError> {
-    let correlation = Correlation::TwoTimes {
-        slow_share: 0.1,
-        fast_time: 1.0,
-        slow_time: 60.0,
-    };
+    let correlation = Correlation::TwoTimes { slow_share: 0.1, fast_time: 1.0, slow_time: 60.0 };
     rippled_double_well("two_times_long_runs", 10_000, correlation)
 }
 
@@ -77,20 +63,13 @@ fn rippled_double_well(name: &'static str, n_samples: usize, correlation: Correl
     let potential = Potential::double_well(0.02, 0.45, 7.0, 0.2).rippled(0.25, 0.27, 0.6);
     let windows = (0..21)
         .map(|i| Window {
-            restraint: Restraint::Harmonic {
-                center: -0.6 + 0.06 * f64::from(i),
-                force_constant: 820.0,
-            },
+            restraint: Restraint::Harmonic { center: -0.6 + 0.06 * f64::from(i), force_constant: 820.0 },
             n_samples,
             correlation,
         })
         .collect();
     let system = OneDimensionalSystem::new(potential, -1.1, 1.1, windows)?;
-    Ok(Case {
-        name,
-        system,
-        edges: even_edges(-0.6, 0.03, 40),
-    })
+    Ok(Case { name, system, edges: even_edges(-0.6, 0.03, 40) })
 }
 
 /// Case b: 24 windows of 5000 samples around a periodic torsion, correlation time 5 frames.
@@ -101,20 +80,13 @@ pub fn periodic() -> Result<Case, SystemError> {
     let potential = Potential::torsion(360.0, vec![(1, 1.2, 0.4), (2, 0.8, -0.7), (3, 1.8, 0.2)]);
     let windows = (0..24)
         .map(|i| Window {
-            restraint: Restraint::Harmonic {
-                center: -172.5 + 15.0 * f64::from(i),
-                force_constant: 0.016,
-            },
+            restraint: Restraint::Harmonic { center: -172.5 + 15.0 * f64::from(i), force_constant: 0.016 },
             n_samples: 5000,
             correlation: Correlation::Exponential { time: 5.0 },
         })
         .collect();
     let system = OneDimensionalSystem::periodic(potential, -180.0, 360.0, windows)?;
-    Ok(Case {
-        name: "periodic",
-        system,
-        edges: even_edges(-180.0, 5.0, 72),
-    })
+    Ok(Case { name: "periodic", system, edges: even_edges(-180.0, 5.0, 72) })
 }
 
 /// Case c: 25 windows with 200 to 10000 samples, force constants of 300 to 3400 and correlation times of 0.4 to 8 frames, all
@@ -132,23 +104,14 @@ pub fn uneven() -> Result<Case, SystemError> {
     let mut windows = Vec::with_capacity(25);
     for i in 0..25 {
         windows.push(Window {
-            restraint: Restraint::Harmonic {
-                center,
-                force_constant: force_constant(i),
-            },
+            restraint: Restraint::Harmonic { center, force_constant: force_constant(i) },
             n_samples: geometric_length(200.0, 50.0, level(i, 7)),
-            correlation: Correlation::Exponential {
-                time: 0.4 * 20.0_f64.powf(level(i, 18)),
-            },
+            correlation: Correlation::Exponential { time: 0.4 * 20.0_f64.powf(level(i, 18)) },
         });
         center += 0.75 * (deviation(i) + deviation(i + 1));
     }
     let system = OneDimensionalSystem::new(potential, 0.0, 2.8, windows)?;
-    Ok(Case {
-        name: "uneven",
-        system,
-        edges: even_edges(0.7, 0.03, 38),
-    })
+    Ok(Case { name: "uneven", system, edges: even_edges(0.7, 0.03, 38) })
 }
 
 /// Case g: 15 windows on a double well with a correlation time of 200 frames and `effective_samples` independent samples'
@@ -160,20 +123,13 @@ pub fn long_memory(effective_samples: usize) -> Result<Case, SystemError> {
     let potential = Potential::double_well(0.05, 0.4, 4.0, -0.25);
     let windows = (0..15)
         .map(|i| Window {
-            restraint: Restraint::Harmonic {
-                center: -0.5 + 0.08 * f64::from(i),
-                force_constant: 500.0,
-            },
+            restraint: Restraint::Harmonic { center: -0.5 + 0.08 * f64::from(i), force_constant: 500.0 },
             n_samples: effective_samples.saturating_mul(400),
             correlation: Correlation::Exponential { time: 200.0 },
         })
         .collect();
     let system = OneDimensionalSystem::new(potential, -1.0, 1.1, windows)?;
-    Ok(Case {
-        name: "long_memory",
-        system,
-        edges: even_edges(-0.5, 0.04, 28),
-    })
+    Ok(Case { name: "long_memory", system, edges: even_edges(-0.5, 0.04, 28) })
 }
 
 /// `n_bins` + 1 edges from `lower` in steps of `width`.
@@ -182,11 +138,7 @@ fn even_edges(lower: f64, width: f64, n_bins: u32) -> Vec<f64> {
 }
 
 /// shortest · ratio^level, rounded.
-#[expect(
-    clippy::cast_possible_truncation,
-    clippy::cast_sign_loss,
-    reason = "between 200 and 10000"
-)]
+#[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "between 200 and 10000")]
 fn geometric_length(shortest: f64, ratio: f64, level: f64) -> usize {
     (shortest * ratio.powf(level)).round() as usize
 }
@@ -225,12 +177,7 @@ mod tests {
         for case in all() {
             for window in 1..case.system.windows().len() {
                 let found = overlap(&case.system, window - 1, window);
-                assert!(
-                    found > 0.1,
-                    "{}, windows {} and {window}: {found}",
-                    case.name,
-                    window - 1
-                );
+                assert!(found > 0.1, "{}, windows {} and {window}: {found}", case.name, window - 1);
             }
         }
     }
@@ -253,13 +200,7 @@ mod tests {
 
     #[test]
     fn lengths_are_those_announced() {
-        let lengths = |case: &Case| {
-            case.system
-                .windows()
-                .iter()
-                .map(|window| window.n_samples)
-                .collect::<Vec<_>>()
-        };
+        let lengths = |case: &Case| case.system.windows().iter().map(|window| window.n_samples).collect::<Vec<_>>();
         let uneven = lengths(&uneven().unwrap());
         assert_eq!((uneven.iter().min(), uneven.iter().max()), (Some(&200), Some(&10_000)));
         assert_eq!(lengths(&independent().unwrap()), vec![5000; 21]);

@@ -35,11 +35,9 @@ impl Correlation {
         match self {
             Self::Independent => f64::from(u8::from(lag == 0)),
             Self::Exponential { time } => decay(lag, time),
-            Self::TwoTimes {
-                slow_share,
-                fast_time,
-                slow_time,
-            } => (1.0 - slow_share) * decay(lag, fast_time) + slow_share * decay(lag, slow_time),
+            Self::TwoTimes { slow_share, fast_time, slow_time } => {
+                (1.0 - slow_share) * decay(lag, fast_time) + slow_share * decay(lag, slow_time)
+            }
         }
     }
 
@@ -50,11 +48,7 @@ impl Correlation {
         match self {
             Self::Independent => 1.0,
             Self::Exponential { time } => exponential_inefficiency(time),
-            Self::TwoTimes {
-                slow_share,
-                fast_time,
-                slow_time,
-            } => {
+            Self::TwoTimes { slow_share, fast_time, slow_time } => {
                 (1.0 - slow_share) * exponential_inefficiency(fast_time)
                     + slow_share * exponential_inefficiency(slow_time)
             }
@@ -70,11 +64,7 @@ impl Correlation {
                 let mut series = Autoregression::new(time, generator);
                 (0..n_samples).map(|_| series.next(generator)).collect()
             }
-            Self::TwoTimes {
-                slow_share,
-                fast_time,
-                slow_time,
-            } => {
+            Self::TwoTimes { slow_share, fast_time, slow_time } => {
                 let mut fast = Autoregression::new(fast_time, generator);
                 let mut slow = Autoregression::new(slow_time, generator);
                 let (fast_weight, slow_weight) = ((1.0 - slow_share).sqrt(), slow_share.sqrt());
@@ -90,11 +80,9 @@ impl Correlation {
         match self {
             Self::Independent => true,
             Self::Exponential { time } => positive(time),
-            Self::TwoTimes {
-                slow_share,
-                fast_time,
-                slow_time,
-            } => (0.0..=1.0).contains(&slow_share) && positive(fast_time) && positive(slow_time),
+            Self::TwoTimes { slow_share, fast_time, slow_time } => {
+                (0.0..=1.0).contains(&slow_share) && positive(fast_time) && positive(slow_time)
+            }
         }
     }
 }
@@ -119,11 +107,7 @@ struct Autoregression {
 impl Autoregression {
     fn new(time: f64, generator: &mut Generator) -> Self {
         let rho = (-1.0 / time).exp();
-        Self {
-            next: StandardNormal.sample(generator),
-            rho,
-            noise: (1.0 - rho * rho).sqrt(),
-        }
+        Self { next: StandardNormal.sample(generator), rho, noise: (1.0 - rho * rho).sqrt() }
     }
 
     fn next(&mut self, generator: &mut Generator) -> f64 {
@@ -144,11 +128,7 @@ mod tests {
     const MODELS: [Correlation; 3] = [
         Correlation::Independent,
         Correlation::Exponential { time: 3.7 },
-        Correlation::TwoTimes {
-            slow_share: 0.3,
-            fast_time: 1.6,
-            slow_time: 14.0,
-        },
+        Correlation::TwoTimes { slow_share: 0.3, fast_time: 1.6, slow_time: 14.0 },
     ];
 
     /// Large-sample variance of an estimated autocorrelation (Bartlett 1946, J. R. Stat. Soc. Suppl. 8, 27).
@@ -188,14 +168,8 @@ mod tests {
             let inefficiency_of_squares =
                 1.0 + 2.0 * (1..600).map(|lag| model.autocorrelation(lag).powi(2)).sum::<f64>();
             let square_error = (2.0 * inefficiency_of_squares / n_samples as f64).sqrt();
-            assert!(
-                mean.abs() < tolerance::STANDARD_ERRORS * mean_error,
-                "{model:?}: {mean}"
-            );
-            assert!(
-                (square - 1.0).abs() < tolerance::STANDARD_ERRORS * square_error,
-                "{model:?}: {square}"
-            );
+            assert!(mean.abs() < tolerance::STANDARD_ERRORS * mean_error, "{model:?}: {mean}");
+            assert!((square - 1.0).abs() < tolerance::STANDARD_ERRORS * square_error, "{model:?}: {square}");
         }
     }
 
@@ -203,10 +177,7 @@ mod tests {
     fn statistical_inefficiency_is_the_sum_over_all_lags() {
         for model in MODELS {
             let summed = 1.0 + 2.0 * (1..2000).map(|lag| model.autocorrelation(lag)).sum::<f64>();
-            assert!(
-                (model.statistical_inefficiency() - summed).abs() < tolerance::SUMMATION_ORDER,
-                "{model:?}"
-            );
+            assert!((model.statistical_inefficiency() - summed).abs() < tolerance::SUMMATION_ORDER, "{model:?}");
         }
     }
 
@@ -217,10 +188,7 @@ mod tests {
         let firsts = (0..replicates).map(|number| model.sample_latent(1, &mut stream(31, number))[0]);
         let square = firsts.map(|z| z * z).sum::<f64>() / replicates as f64;
         let standard_error = (2.0 / replicates as f64).sqrt();
-        assert!(
-            (square - 1.0).abs() < tolerance::STANDARD_ERRORS * standard_error,
-            "{square}"
-        );
+        assert!((square - 1.0).abs() < tolerance::STANDARD_ERRORS * standard_error, "{square}");
     }
 
     #[test]
@@ -228,32 +196,11 @@ mod tests {
         assert!(MODELS.iter().all(|model| model.is_valid()));
         for time in [0.0, -2.0, f64::NAN, f64::INFINITY] {
             assert!(!Correlation::Exponential { time }.is_valid());
-            assert!(
-                !Correlation::TwoTimes {
-                    slow_share: 0.3,
-                    fast_time: time,
-                    slow_time: 9.0
-                }
-                .is_valid()
-            );
-            assert!(
-                !Correlation::TwoTimes {
-                    slow_share: 0.3,
-                    fast_time: 3.0,
-                    slow_time: time
-                }
-                .is_valid()
-            );
+            assert!(!Correlation::TwoTimes { slow_share: 0.3, fast_time: time, slow_time: 9.0 }.is_valid());
+            assert!(!Correlation::TwoTimes { slow_share: 0.3, fast_time: 3.0, slow_time: time }.is_valid());
         }
         for slow_share in [-0.1, 1.1, f64::NAN] {
-            assert!(
-                !Correlation::TwoTimes {
-                    slow_share,
-                    fast_time: 3.0,
-                    slow_time: 9.0
-                }
-                .is_valid()
-            );
+            assert!(!Correlation::TwoTimes { slow_share, fast_time: 3.0, slow_time: 9.0 }.is_valid());
         }
     }
 }

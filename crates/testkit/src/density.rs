@@ -15,10 +15,7 @@ const GAUSS: [(f64, f64); 5] = [
 /// ∫ integrand over [lower, upper] by one five-point rule.
 fn gauss(lower: f64, upper: f64, integrand: impl Fn(f64) -> f64) -> f64 {
     let (middle, half) = (0.5 * (lower + upper), 0.5 * (upper - lower));
-    half * GAUSS
-        .iter()
-        .map(|(node, weight)| weight * integrand(middle + half * node))
-        .sum::<f64>()
+    half * GAUSS.iter().map(|(node, weight)| weight * integrand(middle + half * node)).sum::<f64>()
 }
 
 #[derive(Clone, Debug)]
@@ -42,10 +39,7 @@ impl Density {
     pub(crate) fn new(lower: f64, upper: f64, energy: impl Fn(f64) -> f64) -> Option<Self> {
         let panel_width = (upper - lower) / PANELS as f64;
         let edge = |i: usize| lower + panel_width * i as f64;
-        let lowest = (0..=PANELS)
-            .map(|i| energy(edge(i)))
-            .filter(|e| e.is_finite())
-            .fold(f64::INFINITY, f64::min);
+        let lowest = (0..=PANELS).map(|i| energy(edge(i))).filter(|e| e.is_finite()).fold(f64::INFINITY, f64::min);
         if !lowest.is_finite() {
             return None;
         }
@@ -121,11 +115,7 @@ impl Density {
     /// of fourth order in the panel's width, below 1e-9 in probability for deviations of 40 panels or more.
     pub(crate) fn quantile(&self, below: f64) -> f64 {
         let below = below.clamp(0.0, 1.0);
-        let index = self
-            .cumulative
-            .partition_point(|&value| value <= below)
-            .clamp(1, PANELS)
-            - 1;
+        let index = self.cumulative.partition_point(|&value| value <= below).clamp(1, PANELS) - 1;
         let mass = self.cumulative[index + 1] - self.cumulative[index];
         if mass <= 0.0 {
             return self.edge(index);
@@ -152,11 +142,7 @@ impl Density {
         self.lower + self.panel_width * index as f64
     }
 
-    #[expect(
-        clippy::cast_possible_truncation,
-        clippy::cast_sign_loss,
-        reason = "clamped to the panels; NaN becomes 0"
-    )]
+    #[expect(clippy::cast_possible_truncation, clippy::cast_sign_loss, reason = "clamped to the panels; NaN becomes 0")]
     fn panel_of(&self, x: f64) -> usize {
         (((x - self.lower) / self.panel_width) as usize).min(PANELS - 1)
     }
@@ -165,10 +151,7 @@ impl Density {
 /// The cubic on [0, 1] from 0 to 1 with end slopes a and b, and its derivative, at t.
 fn cubic(a: f64, b: f64, t: f64) -> (f64, f64) {
     let (second, third) = (3.0 - 2.0 * a - b, a + b - 2.0);
-    (
-        t * (a + t * (second + t * third)),
-        a + t * (2.0 * second + t * 3.0 * third),
-    )
+    (t * (a + t * (second + t * third)), a + t * (2.0 * second + t * 3.0 * third))
 }
 
 /// Root t in [0, 1] of cubic(t) = target, by Newton steps kept inside a shrinking bracket.
@@ -183,11 +166,7 @@ fn invert_cubic(a: f64, b: f64, target: f64) -> f64 {
             low = t;
         }
         let newton = t - excess / derivative;
-        let next = if newton >= low && newton <= high {
-            newton
-        } else {
-            0.5 * (low + high)
-        };
+        let next = if newton >= low && newton <= high { newton } else { 0.5 * (low + high) };
         if (next - t).abs() < 1e-15 {
             return next;
         }

@@ -52,20 +52,13 @@ impl fmt::Display for SystemError {
         match self {
             Self::NoWindows => write!(out, "expected at least one window, found none"),
             Self::Range { lower, upper } => {
-                write!(
-                    out,
-                    "expected a finite range with `lower` < `upper`, found {lower} to {upper}"
-                )
+                write!(out, "expected a finite range with `lower` < `upper`, found {lower} to {upper}")
             }
             Self::Restraint { window, found } => write!(
                 out,
                 "window {window}: expected finite numbers and a `force_constant` that is not negative, found {found}"
             ),
-            Self::Unsupported {
-                window,
-                found,
-                expected,
-            } => {
+            Self::Unsupported { window, found, expected } => {
                 write!(out, "window {window}: expected {expected}, found {found}")
             }
             Self::Correlation { window, found } => write!(
@@ -75,10 +68,9 @@ impl fmt::Display for SystemError {
             Self::ForceConstant { found } => {
                 write!(out, "expected a positive finite `force_constant`, found {found}")
             }
-            Self::NoWeight => write!(
-                out,
-                "expected energies that are numbers, and finite somewhere in the range; found others"
-            ),
+            Self::NoWeight => {
+                write!(out, "expected energies that are numbers, and finite somewhere in the range; found others")
+            }
         }
     }
 }

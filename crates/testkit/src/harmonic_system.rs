@@ -46,13 +46,11 @@ impl HarmonicSystem {
         for (index, window) in windows.into_iter().enumerate() {
             check_window(index, &window)?;
             let (free_energy, mean, variance) =
-                system
-                    .closed_form(&window.restraint)
-                    .ok_or_else(|| SystemError::Unsupported {
-                        window: index,
-                        found: format!("{:?}", window.restraint),
-                        expected: "no restraint, a harmonic or a linear one",
-                    })?;
+                system.closed_form(&window.restraint).ok_or_else(|| SystemError::Unsupported {
+                    window: index,
+                    found: format!("{:?}", window.restraint),
+                    expected: "no restraint, a harmonic or a linear one",
+                })?;
             system.free_energies.push(free_energy);
             system.means.push(mean);
             system.variances.push(variance);
@@ -66,10 +64,7 @@ impl HarmonicSystem {
         let (a, kappa) = (self.center, self.force_constant);
         match *restraint {
             Restraint::None => Some((0.0, a, kappa.recip())),
-            Restraint::Harmonic {
-                center: c,
-                force_constant: k,
-            } => {
+            Restraint::Harmonic { center: c, force_constant: k } => {
                 let total = kappa + k;
                 let free_energy = 0.5 * (k / kappa).ln_1p() + 0.5 * kappa * k / total * (a - c).powi(2);
                 Some((free_energy, (kappa * a + k * c) / total, total.recip()))
@@ -143,32 +138,19 @@ mod tests {
 
     fn system(n_samples: usize, correlation: Correlation) -> HarmonicSystem {
         let restraints = [
-            Restraint::Harmonic {
-                center: -0.8,
-                force_constant: 37.0,
-            },
-            Restraint::Harmonic {
-                center: 0.9,
-                force_constant: 12.5,
-            },
+            Restraint::Harmonic { center: -0.8, force_constant: 37.0 },
+            Restraint::Harmonic { center: 0.9, force_constant: 12.5 },
             Restraint::Linear { slope: 5.4 },
             Restraint::None,
         ];
-        let windows = restraints.map(|restraint| Window {
-            restraint,
-            n_samples,
-            correlation,
-        });
+        let windows = restraints.map(|restraint| Window { restraint, n_samples, correlation });
         HarmonicSystem::new(0.23, 7.9, windows.to_vec()).unwrap()
     }
 
     #[test]
     fn sample_moments_agree_with_the_closed_forms() {
         let n_samples = 40_000;
-        for (seed, correlation) in [
-            (41, Correlation::Independent),
-            (42, Correlation::Exponential { time: 6.5 }),
-        ] {
+        for (seed, correlation) in [(41, Correlation::Independent), (42, Correlation::Exponential { time: 6.5 })] {
             let system = system(n_samples, correlation);
             let inefficiency_of_squares =
                 1.0 + 2.0 * (1..400).map(|t| correlation.autocorrelation(t).powi(2)).sum::<f64>();
@@ -179,16 +161,10 @@ mod tests {
                 assert!(error.abs() < bound, "mean of window {window}: {error} against {bound}");
 
                 let truth = system.window_variance(window);
-                let square = series
-                    .iter()
-                    .map(|x| (x - system.window_mean(window)).powi(2))
-                    .sum::<f64>();
+                let square = series.iter().map(|x| (x - system.window_mean(window)).powi(2)).sum::<f64>();
                 let relative = square / n_samples as f64 / truth - 1.0;
                 let bound = tolerance::STANDARD_ERRORS * (2.0 * inefficiency_of_squares / n_samples as f64).sqrt();
-                assert!(
-                    relative.abs() < bound,
-                    "variance of window {window}: {relative} against {bound}"
-                );
+                assert!(relative.abs() < bound, "variance of window {window}: {relative} against {bound}");
             }
         }
     }
@@ -199,19 +175,13 @@ mod tests {
         let system = system(200_000, Correlation::Independent);
         let unbiased = &system.sample_all(43, 0)[3];
         for window in [1, 2] {
-            let weights: Vec<f64> = unbiased
-                .iter()
-                .map(|&x| (-system.bias_energy(window, x)).exp())
-                .collect();
+            let weights: Vec<f64> = unbiased.iter().map(|&x| (-system.bias_energy(window, x)).exp()).collect();
             let mean = weights.iter().sum::<f64>() / weights.len() as f64;
             let variance = weights.iter().map(|w| (w - mean).powi(2)).sum::<f64>() / weights.len() as f64;
             let standard_error = (variance / weights.len() as f64).sqrt() / mean;
             let error = -mean.ln() - system.reduced_free_energies()[window];
             assert!(standard_error < 0.02, "the check has no power: {standard_error}");
-            assert!(
-                error.abs() < tolerance::STANDARD_ERRORS * standard_error,
-                "window {window}: {error}"
-            );
+            assert!(error.abs() < tolerance::STANDARD_ERRORS * standard_error, "window {window}: {error}");
         }
     }
 
@@ -220,10 +190,7 @@ mod tests {
         let system = system(1, Correlation::Independent);
         let (above, below) = (system.probability(2.4, 2.7), system.probability(-2.24, -1.94));
         assert!(above > 0.0 && above < 1e-8);
-        assert!(
-            (above / below - 1.0).abs() < 1e-9,
-            "bins mirrored with rounded edges: {above} and {below}"
-        );
+        assert!((above / below - 1.0).abs() < 1e-9, "bins mirrored with rounded edges: {above} and {below}");
     }
 
     #[test]
@@ -243,10 +210,7 @@ mod tests {
         for force_constant in [0.0, -3.0, f64::NAN, f64::INFINITY] {
             assert!(HarmonicSystem::new(0.2, force_constant, vec![good.clone()]).is_err());
         }
-        assert_eq!(
-            HarmonicSystem::new(0.2, 3.0, Vec::new()).unwrap_err(),
-            SystemError::NoWindows
-        );
+        assert_eq!(HarmonicSystem::new(0.2, 3.0, Vec::new()).unwrap_err(), SystemError::NoWindows);
         let custom = Window::independent(Restraint::Custom(Potential::harmonic(0.1, 2.0)), 10);
         let error = HarmonicSystem::new(0.2, 3.0, vec![good, custom]).unwrap_err();
         assert_eq!(

@@ -25,22 +25,14 @@ impl FromStr for DensityOfStates {
         let table: Table = text.parse()?;
         let (energies, ln_degeneracies) = (table.column("energy")?, table.column("ln_degeneracy")?);
         if energies.is_empty() || !energies.is_sorted_by(|low, high| low < high) {
-            return Err(TableError::Content {
-                reason: "expected energies in increasing order".to_owned(),
-            });
+            return Err(TableError::Content { reason: "expected energies in increasing order".to_owned() });
         }
-        if let Some(found) = ln_degeneracies
-            .iter()
-            .find(|value| !(0.0..f64::INFINITY).contains(*value))
-        {
+        if let Some(found) = ln_degeneracies.iter().find(|value| !(0.0..f64::INFINITY).contains(*value)) {
             return Err(TableError::Content {
                 reason: format!("expected `ln_degeneracy` of at least 0, found {found}"),
             });
         }
-        Ok(Self {
-            energies,
-            ln_degeneracies,
-        })
+        Ok(Self { energies, ln_degeneracies })
     }
 }
 
@@ -60,12 +52,7 @@ impl DensityOfStates {
     /// −ln Z(K), the reduced free energy of the lattice at `coupling` K.
     #[must_use]
     pub fn reduced_free_energy(&self, coupling: f64) -> f64 {
-        let terms = || {
-            self.energies
-                .iter()
-                .zip(&self.ln_degeneracies)
-                .map(|(energy, ln_g)| ln_g - coupling * energy)
-        };
+        let terms = || self.energies.iter().zip(&self.ln_degeneracies).map(|(energy, ln_g)| ln_g - coupling * energy);
         let largest = terms().fold(f64::NEG_INFINITY, f64::max);
         -(largest + terms().map(|term| (term - largest).exp()).sum::<f64>().ln())
     }
@@ -84,11 +71,7 @@ impl DensityOfStates {
     /// Mean energy at `coupling`.
     #[must_use]
     pub fn mean_energy(&self, coupling: f64) -> f64 {
-        self.probabilities(coupling)
-            .iter()
-            .zip(&self.energies)
-            .map(|(probability, energy)| probability * energy)
-            .sum()
+        self.probabilities(coupling).iter().zip(&self.energies).map(|(probability, energy)| probability * energy).sum()
     }
 
     /// Variance of the energy at `coupling`.
@@ -96,11 +79,7 @@ impl DensityOfStates {
     pub fn energy_variance(&self, coupling: f64) -> f64 {
         let mean = self.mean_energy(coupling);
         let probabilities = self.probabilities(coupling);
-        probabilities
-            .iter()
-            .zip(&self.energies)
-            .map(|(p, energy)| p * (energy - mean).powi(2))
-            .sum()
+        probabilities.iter().zip(&self.energies).map(|(p, energy)| p * (energy - mean).powi(2)).sum()
     }
 
     /// Draws `n_samples` energies at `coupling`: the inverse of the distribution function at `Φ(z_t)`, with z from
@@ -178,21 +157,9 @@ mod tests {
     #[test]
     fn tables_that_are_no_density_of_states_are_refused() {
         let message = |text: &str| text.parse::<DensityOfStates>().unwrap_err().to_string();
-        assert_eq!(
-            message("energy,ln_degeneracy\n"),
-            "expected energies in increasing order"
-        );
-        assert_eq!(
-            message("energy,ln_degeneracy\n4,1\n0,2\n"),
-            "expected energies in increasing order"
-        );
-        assert_eq!(
-            message("energy,ln_degeneracy\n4,NaN\n"),
-            "expected `ln_degeneracy` of at least 0, found NaN"
-        );
-        assert_eq!(
-            message("energy,count\n4,2\n"),
-            "expected a column `ln_degeneracy`, found energy, count"
-        );
+        assert_eq!(message("energy,ln_degeneracy\n"), "expected energies in increasing order");
+        assert_eq!(message("energy,ln_degeneracy\n4,1\n0,2\n"), "expected energies in increasing order");
+        assert_eq!(message("energy,ln_degeneracy\n4,NaN\n"), "expected `ln_degeneracy` of at least 0, found NaN");
+        assert_eq!(message("energy,count\n4,2\n"), "expected a column `ln_degeneracy`, found energy, count");
     }
 }

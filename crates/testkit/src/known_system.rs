@@ -31,10 +31,8 @@ pub trait KnownSystem {
     /// Exact profile −ln(p/width) on the bins between neighbors of `edges`, kT, its lowest value zero. Bins without weight
     /// are infinite. Fewer than two edges give no bins.
     fn profile(&self, edges: &[f64]) -> Vec<f64> {
-        let raw: Vec<f64> = edges
-            .windows(2)
-            .map(|pair| -(self.probability(pair[0], pair[1]) / (pair[1] - pair[0])).ln())
-            .collect();
+        let raw: Vec<f64> =
+            edges.windows(2).map(|pair| -(self.probability(pair[0], pair[1]) / (pair[1] - pair[0])).ln()).collect();
         let lowest = raw.iter().copied().fold(f64::INFINITY, f64::min);
         raw.iter().map(|value| value - lowest).collect()
     }

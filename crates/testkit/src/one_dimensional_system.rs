@@ -54,10 +54,7 @@ impl OneDimensionalSystem {
     /// # Errors
     /// As [`Self::new`]; also if a restraint is linear.
     pub fn periodic(potential: Potential, lower: f64, period: f64, windows: Vec<Window>) -> Result<Self, SystemError> {
-        if let Some(index) = windows
-            .iter()
-            .position(|window| matches!(window.restraint, Restraint::Linear { .. }))
-        {
+        if let Some(index) = windows.iter().position(|window| matches!(window.restraint, Restraint::Linear { .. })) {
             return Err(SystemError::Unsupported {
                 window: index,
                 found: format!("{:?}", windows[index].restraint),
@@ -87,20 +84,8 @@ impl OneDimensionalSystem {
             let energy = |x| potential.energy(x) + window.restraint.energy(x, period);
             densities.push(Density::new(lower, upper, energy).ok_or(SystemError::NoWeight)?);
         }
-        let free_energies = densities
-            .iter()
-            .map(|density| unbiased.ln_integral() - density.ln_integral())
-            .collect();
-        Ok(Self {
-            potential,
-            lower,
-            upper,
-            period,
-            windows,
-            unbiased,
-            densities,
-            free_energies,
-        })
+        let free_energies = densities.iter().map(|density| unbiased.ln_integral() - density.ln_integral()).collect();
+        Ok(Self { potential, lower, upper, period, windows, unbiased, densities, free_energies })
     }
 
     /// The first `n_windows` windows only (all of them if there are fewer), at least one.
@@ -140,9 +125,7 @@ impl OneDimensionalSystem {
     /// Exact density of window `window` at `x`, per unit of x; zero outside the range.
     #[must_use]
     pub fn window_density(&self, window: usize, x: f64) -> f64 {
-        self.inside(x, || {
-            (-self.window_energy(window, x) - self.densities[window].ln_integral()).exp()
-        })
+        self.inside(x, || (-self.window_energy(window, x) - self.densities[window].ln_integral()).exp())
     }
 
     /// Exact probability of lower ≤ x < upper in window `window`.
@@ -170,11 +153,7 @@ impl OneDimensionalSystem {
     }
 
     fn inside(&self, x: f64, value: impl FnOnce() -> f64) -> f64 {
-        if (self.lower..self.upper).contains(&x) {
-            value()
-        } else {
-            0.0
-        }
+        if (self.lower..self.upper).contains(&x) { value() } else { 0.0 }
     }
 
     fn window_energy(&self, window: usize, x: f64) -> f64 {
@@ -219,11 +198,7 @@ impl KnownSystem for OneDimensionalSystem {
             .map(|z| {
                 let below = start + standard_normal_cdf(z);
                 // Only a periodic system has a start above zero, and there the order goes on at the lower end.
-                let wrapped = if start > 0.0 && below >= 1.0 {
-                    below - 1.0
-                } else {
-                    below
-                };
+                let wrapped = if start > 0.0 && below >= 1.0 { below - 1.0 } else { below };
                 self.densities[window].quantile(wrapped)
             })
             .collect()
@@ -242,14 +217,8 @@ mod tests {
 
     fn restraints() -> Vec<Window> {
         [
-            Restraint::Harmonic {
-                center: -0.8,
-                force_constant: 37.0,
-            },
-            Restraint::Harmonic {
-                center: 0.9,
-                force_constant: 1250.0,
-            },
+            Restraint::Harmonic { center: -0.8, force_constant: 37.0 },
+            Restraint::Harmonic { center: 0.9, force_constant: 1250.0 },
             Restraint::Linear { slope: 5.4 },
             Restraint::None,
         ]
@@ -279,20 +248,11 @@ mod tests {
         let quadrature = OneDimensionalSystem::new(Potential::harmonic(0.23, 7.9), -4.0, 4.6, restraints()).unwrap();
         for window in 0..closed.windows().len() {
             let difference = closed.reduced_free_energies()[window] - quadrature.reduced_free_energies()[window];
-            assert!(
-                difference.abs() < tolerance::QUADRATURE,
-                "f of window {window} is off by {difference}"
-            );
+            assert!(difference.abs() < tolerance::QUADRATURE, "f of window {window} is off by {difference}");
             let difference = closed.window_mean(window) - quadrature.window_mean(window);
-            assert!(
-                difference.abs() < tolerance::QUADRATURE,
-                "mean of window {window} is off by {difference}"
-            );
+            assert!(difference.abs() < tolerance::QUADRATURE, "mean of window {window} is off by {difference}");
             let difference = closed.window_variance(window) - quadrature.window_variance(window);
-            assert!(
-                difference.abs() < tolerance::QUADRATURE,
-                "variance of window {window} is off by {difference}"
-            );
+            assert!(difference.abs() < tolerance::QUADRATURE, "variance of window {window} is off by {difference}");
         }
         let edges = [-2.0, -1.47, -0.3, 0.91, 0.912, 2.6];
         for (closed, quadrature) in closed.profile(&edges).iter().zip(quadrature.profile(&edges)) {
@@ -319,13 +279,8 @@ mod tests {
         let plain = Potential::double_well(0.1, 0.5, 12.0, 0.15);
         let raised = |shift: f64| {
             let plain = plain.clone();
-            OneDimensionalSystem::new(
-                Potential::new(move |x| plain.energy(x) + shift),
-                -1.3,
-                1.4,
-                restraints(),
-            )
-            .unwrap()
+            OneDimensionalSystem::new(Potential::new(move |x| plain.energy(x) + shift), -1.3, 1.4, restraints())
+                .unwrap()
         };
         let reference = double_well(restraints());
         for shift in [-4000.0, 700.0] {
@@ -369,10 +324,7 @@ mod tests {
         for window in 0..4 {
             for below in [1e-7, 0.003, 0.37, 0.5, 0.88, 0.999_9] {
                 let found = system.window_probability(window, -1.3, system.window_quantile(window, below));
-                assert!(
-                    (found - below).abs() < tolerance::QUANTILE,
-                    "window {window}: {found} for {below}"
-                );
+                assert!((found - below).abs() < tolerance::QUANTILE, "window {window}: {found} for {below}");
             }
         }
     }
@@ -394,32 +346,20 @@ mod tests {
     #[test]
     fn memory_goes_on_across_the_periodic_boundary() {
         let center = 176.0;
-        let restraint = Restraint::Harmonic {
-            center,
-            force_constant: 0.01,
-        };
-        let windows = vec![Window {
-            restraint,
-            n_samples: 50_000,
-            correlation: Correlation::Exponential { time: 20.0 },
-        }];
+        let restraint = Restraint::Harmonic { center, force_constant: 0.01 };
+        let windows =
+            vec![Window { restraint, n_samples: 50_000, correlation: Correlation::Exponential { time: 20.0 } }];
         let flat = Potential::torsion(360.0, vec![(3, 0.2, 0.5)]);
         let system = OneDimensionalSystem::periodic(flat, -180.0, 360.0, windows).unwrap();
         let series = &system.sample_all(53, 0)[0];
         assert!(series.iter().all(|x| (-180.0..180.0).contains(x)));
         let share_across = series.iter().filter(|x| **x < 0.0).count() as f64 / series.len() as f64;
         assert!((0.2..0.6).contains(&share_across), "{share_across}");
-        let displacements: Vec<f64> = series
-            .iter()
-            .map(|x| (x - center + 180.0).rem_euclid(360.0) - 180.0)
-            .collect();
+        let displacements: Vec<f64> = series.iter().map(|x| (x - center + 180.0).rem_euclid(360.0) - 180.0).collect();
         // The window is nearly Gaussian, so the displacement keeps the latent exp(−1/20) = 0.951.
         let next = autocorrelation(&displacements, 1)[1];
         assert!((next - 0.951).abs() < 0.01, "{next}");
-        let largest_step = displacements
-            .windows(2)
-            .map(|pair| (pair[1] - pair[0]).abs())
-            .fold(0.0, f64::max);
+        let largest_step = displacements.windows(2).map(|pair| (pair[1] - pair[0]).abs()).fold(0.0, f64::max);
         assert!(largest_step < 30.0, "{largest_step}");
     }
 
@@ -434,17 +374,12 @@ mod tests {
     #[test]
     fn impossible_systems_are_refused() {
         let build = |lower, upper, windows| {
-            OneDimensionalSystem::new(Potential::harmonic(0.2, 3.0), lower, upper, windows)
-                .map(|_| ())
-                .unwrap_err()
+            OneDimensionalSystem::new(Potential::harmonic(0.2, 3.0), lower, upper, windows).map(|_| ()).unwrap_err()
         };
         assert!(matches!(build(1.0, -1.0, restraints()), SystemError::Range { .. }));
         assert!(matches!(build(f64::NAN, 1.0, restraints()), SystemError::Range { .. }));
         assert_eq!(build(-1.0, 1.0, Vec::new()), SystemError::NoWindows);
-        let stiff = Restraint::Harmonic {
-            center: 0.2,
-            force_constant: f64::NAN,
-        };
+        let stiff = Restraint::Harmonic { center: 0.2, force_constant: f64::NAN };
         assert_eq!(
             build(-1.0, 1.0, vec![Window::independent(stiff, 5)]).to_string(),
             "window 0: expected finite numbers and a `force_constant` that is not negative, found \
@@ -453,9 +388,6 @@ mod tests {
         let broken = OneDimensionalSystem::new(Potential::new(f64::sqrt), -1.0, 1.0, restraints());
         assert_eq!(broken.unwrap_err(), SystemError::NoWeight);
         let linear = OneDimensionalSystem::periodic(Potential::harmonic(0.2, 3.0), -1.0, 2.0, restraints());
-        assert!(matches!(
-            linear.unwrap_err(),
-            SystemError::Unsupported { window: 2, .. }
-        ));
+        assert!(matches!(linear.unwrap_err(), SystemError::Unsupported { window: 2, .. }));
     }
 }

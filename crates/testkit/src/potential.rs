@@ -35,10 +35,7 @@ impl Potential {
     pub fn torsion(period: f64, terms: Vec<(u32, f64, f64)>) -> Self {
         Self::new(move |x| {
             let angle = TAU * x / period;
-            terms
-                .iter()
-                .map(|&(n, amplitude, phase)| amplitude * (f64::from(n) * angle - phase).cos())
-                .sum()
+            terms.iter().map(|&(n, amplitude, phase)| amplitude * (f64::from(n) * angle - phase).cos()).sum()
         })
     }
 

@@ -42,10 +42,9 @@ impl Restraint {
     #[must_use]
     pub fn shifted(&self, distance: f64) -> Self {
         match self {
-            Self::Harmonic { center, force_constant } => Self::Harmonic {
-                center: center + distance,
-                force_constant: *force_constant,
-            },
+            Self::Harmonic { center, force_constant } => {
+                Self::Harmonic { center: center + distance, force_constant: *force_constant }
+            }
             other => other.clone(),
         }
     }
@@ -54,10 +53,9 @@ impl Restraint {
     #[must_use]
     pub fn stiffened(&self, factor: f64) -> Self {
         match self {
-            Self::Harmonic { center, force_constant } => Self::Harmonic {
-                center: *center,
-                force_constant: factor * force_constant,
-            },
+            Self::Harmonic { center, force_constant } => {
+                Self::Harmonic { center: *center, force_constant: factor * force_constant }
+            }
             other => other.clone(),
         }
     }
@@ -96,10 +94,7 @@ mod tests {
 
     #[test]
     fn nearest_image_is_used_in_a_periodic_system() {
-        let restraint = Restraint::Harmonic {
-            center: 170.0,
-            force_constant: 0.02,
-        };
+        let restraint = Restraint::Harmonic { center: 170.0, force_constant: 0.02 };
         let expected = 0.5 * 0.02 * 25.0_f64.powi(2);
         assert!((restraint.energy(-165.0, Some(360.0)) / expected - 1.0).abs() < tolerance::ROUNDING_RELATIVE);
         let far = 0.5 * 0.02 * 335.0_f64.powi(2);

@@ -77,9 +77,7 @@ impl FromStr for Table {
             .filter(|(_, line)| !line.is_empty() && !line.starts_with('#'));
         let (_, header) = lines.next().ok_or(TableError::NoHeader)?;
         let names: Vec<String> = header.split(',').map(|name| name.trim().to_owned()).collect();
-        let rows = lines
-            .map(|(number, line)| parse_row(number, line, names.len()))
-            .collect::<Result<_, _>>()?;
+        let rows = lines.map(|(number, line)| parse_row(number, line, names.len())).collect::<Result<_, _>>()?;
         Ok(Self { names, rows })
     }
 }
@@ -88,22 +86,9 @@ fn parse_row(number: usize, line: &str, expected: usize) -> Result<Vec<f64>, Tab
     let row: Vec<f64> = line
         .split(',')
         .map(str::trim)
-        .map(|field| {
-            field.parse().map_err(|_| TableError::Number {
-                line: number,
-                found: field.to_owned(),
-            })
-        })
+        .map(|field| field.parse().map_err(|_| TableError::Number { line: number, found: field.to_owned() }))
         .collect::<Result<_, _>>()?;
-    if row.len() == expected {
-        Ok(row)
-    } else {
-        Err(TableError::Fields {
-            line: number,
-            expected,
-            found: row.len(),
-        })
-    }
+    if row.len() == expected { Ok(row) } else { Err(TableError::Fields { line: number, expected, found: row.len() }) }
 }
 
 impl Table {
@@ -128,10 +113,7 @@ impl Table {
             .names
             .iter()
             .position(|candidate| candidate == name)
-            .ok_or_else(|| TableError::NoColumn {
-                name: name.to_owned(),
-                present: self.names.clone(),
-            })?;
+            .ok_or_else(|| TableError::NoColumn { name: name.to_owned(), present: self.names.clone() })?;
         Ok(self.rows.iter().map(|row| row[index]).collect())
     }
 }
@@ -144,9 +126,7 @@ mod tests {
 
     #[test]
     fn comments_blanks_and_spaces_are_passed_over() {
-        let table: Table = "# made up\n\n x , y\n1.5,-2\n# between\n 3e2 , 0.25 \n"
-            .parse()
-            .unwrap();
+        let table: Table = "# made up\n\n x , y\n1.5,-2\n# between\n 3e2 , 0.25 \n".parse().unwrap();
         assert_eq!(table.names(), ["x", "y"]);
         assert_eq!(table.rows(), [vec![1.5, -2.0], vec![300.0, 0.25]]);
         assert_eq!(table.column("y").unwrap(), [-2.0, 0.25]);
@@ -159,9 +139,6 @@ mod tests {
         assert_eq!(message("x,y\n1,2\n3\n"), "line 3: expected 2 fields, found 1");
         assert_eq!(message("x,y\n1,two\n"), "line 2: expected a number, found `two`");
         let table: Table = "x,y\n1,2\n".parse().unwrap();
-        assert_eq!(
-            table.column("z").unwrap_err().to_string(),
-            "expected a column `z`, found x, y"
-        );
+        assert_eq!(table.column("z").unwrap_err().to_string(), "expected a column `z`, found x, y");
     }
 }

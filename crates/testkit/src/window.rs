@@ -19,27 +19,17 @@ impl Window {
     /// A window with independent samples.
     #[must_use]
     pub fn independent(restraint: Restraint, n_samples: usize) -> Self {
-        Self {
-            restraint,
-            n_samples,
-            correlation: Correlation::Independent,
-        }
+        Self { restraint, n_samples, correlation: Correlation::Independent }
     }
 }
 
 /// Refuses a window whose numbers are out of range.
 pub(crate) fn check_window(index: usize, window: &Window) -> Result<(), SystemError> {
     if !window.restraint.is_valid() {
-        return Err(SystemError::Restraint {
-            window: index,
-            found: format!("{:?}", window.restraint),
-        });
+        return Err(SystemError::Restraint { window: index, found: format!("{:?}", window.restraint) });
     }
     if !window.correlation.is_valid() {
-        return Err(SystemError::Correlation {
-            window: index,
-            found: format!("{:?}", window.correlation),
-        });
+        return Err(SystemError::Correlation { window: index, found: format!("{:?}", window.correlation) });
     }
     Ok(())
 }

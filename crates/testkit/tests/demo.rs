@@ -12,8 +12,7 @@ fn text_of<'a>(files: &'a [(String, String)], name: &str) -> &'a str {
 
 fn times(text: &str) -> Vec<f64> {
     let rows = text.lines().filter(|line| !line.starts_with('#'));
-    rows.map(|row| row.split_whitespace().next().unwrap().parse().unwrap())
-        .collect()
+    rows.map(|row| row.split_whitespace().next().unwrap().parse().unwrap()).collect()
 }
 
 #[test]
@@ -35,10 +34,7 @@ fn the_continuation_repeats_frames_word_for_word() {
     let (first, second) = (text_of(&files, "z11.txt"), text_of(&files, "z11_continued.txt"));
     let (before, after) = (times(first), times(second));
     assert!((before[before.len() - 1] - 3200.0).abs() < 0.5 && (after[0] - 3150.0).abs() < 0.5);
-    let repeated = second
-        .lines()
-        .filter(|row| !row.starts_with('#') && first.contains(row))
-        .count();
+    let repeated = second.lines().filter(|row| !row.starts_with('#') && first.contains(row)).count();
     assert_eq!(repeated, 26);
 }
 
@@ -47,11 +43,5 @@ fn two_starts_of_a_window_share_no_frame() {
     let files = scenario::files().unwrap();
     let (first, second) = (text_of(&files, "z17_start1.txt"), text_of(&files, "z17_start2.txt"));
     assert_eq!(times(first), times(second));
-    assert!(
-        !first
-            .lines()
-            .zip(second.lines())
-            .skip(2)
-            .any(|(one, other)| one == other)
-    );
+    assert!(!first.lines().zip(second.lines()).skip(2).any(|(one, other)| one == other));
 }

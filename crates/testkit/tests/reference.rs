@@ -31,10 +31,7 @@ fn ising_free_energies_agree_with_the_product_formula() {
         let (states, expected) = (density(size), table.column(&format!("minus_ln_z_{size}")).unwrap());
         for (coupling, expected) in couplings.iter().zip(expected) {
             let difference = states.reduced_free_energy(*coupling) - expected;
-            assert!(
-                difference.abs() < tolerance::STORED_DIGITS,
-                "{size} at {coupling}: {difference}"
-            );
+            assert!(difference.abs() < tolerance::STORED_DIGITS, "{size} at {coupling}: {difference}");
         }
     }
 }
@@ -65,9 +62,7 @@ fn dense_free_energies_satisfy_the_likelihood_equations() {
             .iter()
             .zip(&f)
             .map(|(window, f)| {
-                let [center, force_constant, slope, n_samples] = window[..] else {
-                    unreachable!("four numbers")
-                };
+                let [center, force_constant, slope, n_samples] = window[..] else { unreachable!("four numbers") };
                 n_samples * (f - 0.5 * force_constant * (x - center).powi(2) - slope * x).exp()
             })
             .collect();
@@ -77,11 +72,7 @@ fn dense_free_energies_satisfy_the_likelihood_equations() {
         }
     }
     for (window, answered) in windows.iter().zip(answered) {
-        assert!(
-            (answered - window[3]).abs() < tolerance::STORED_DIGITS * window[3],
-            "{answered} of {}",
-            window[3]
-        );
+        assert!((answered - window[3]).abs() < tolerance::STORED_DIGITS * window[3], "{answered} of {}", window[3]);
     }
 }
 
@@ -96,10 +87,7 @@ fn butane_torsion_files_are_complete() {
     for name in names {
         let text = read(&format!("butane-torsion/{name}"));
         let rows = text.lines().filter(|line| !line.starts_with('#'));
-        assert!(
-            rows.clone()
-                .all(|row| row.split_whitespace().all(|field| field.parse::<f64>().is_ok()))
-        );
+        assert!(rows.clone().all(|row| row.split_whitespace().all(|field| field.parse::<f64>().is_ok())));
         assert_eq!(rows.count(), 4000, "{name}");
     }
     let truth: Vec<f64> = read("butane-torsion/truth.csv")
@@ -120,14 +108,8 @@ fn butane_torsion_files_are_complete() {
 /// National Institute of Standards and Technology, Statistical Reference Datasets, Lew.
 #[test]
 fn autocorrelation_agrees_with_the_certified_value() {
-    let series: Vec<f64> = read("nist-strd/lew.txt")
-        .lines()
-        .map(|line| line.trim().parse().unwrap())
-        .collect();
+    let series: Vec<f64> = read("nist-strd/lew.txt").lines().map(|line| line.trim().parse().unwrap()).collect();
     assert_eq!(series.len(), 200);
     let found = autocorrelation(&series, 1)[1];
-    assert!(
-        (found / -0.307_304_800_605_679 - 1.0).abs() < tolerance::CERTIFIED_DIGITS_RELATIVE,
-        "{found}"
-    );
+    assert!((found / -0.307_304_800_605_679 - 1.0).abs() < tolerance::CERTIFIED_DIGITS_RELATIVE, "{found}");
 }

@@ -10,21 +10,18 @@ impl IngestError {
             Self::Missing { .. } => "check the path; a relative path is taken from where the request says",
             Self::Directory { .. } => "name the file inside the directory, or a pattern that matches it",
             Self::Unreadable { .. } => "check that the file can be read by you and that its disk is sound",
-            Self::NoRows {
-                unfinished_line: Some(_),
-                ..
-            } => "let the run write at least one whole row; if the line is complete, end it with a line break",
+            Self::NoRows { unfinished_line: Some(_), .. } => {
+                "let the run write at least one whole row; if the line is complete, end it with a line break"
+            }
             Self::NoRows { .. } => {
                 "leave the file out, or check that it is the right one and that its rows are not taken for comments"
             }
-            Self::NotText {
-                problem: TextProblem::ZeroByte,
-                ..
-            } => "give a file of plain or gzip-compressed text; a binary file must be converted first",
-            Self::NotText {
-                problem: TextProblem::InvalidByte(_) | TextProblem::WideCharacters,
-                ..
-            } => "save the file as UTF-8 or plain ASCII text",
+            Self::NotText { problem: TextProblem::ZeroByte, .. } => {
+                "give a file of plain or gzip-compressed text; a binary file must be converted first"
+            }
+            Self::NotText { problem: TextProblem::InvalidByte(_) | TextProblem::WideCharacters, .. } => {
+                "save the file as UTF-8 or plain ASCII text"
+            }
             Self::LineTooLong { .. } => "check that the file is text with one row a line",
             Self::GzipCutShort { .. } => {
                 "copy the file again or wait until it is finished; what can be saved may be decompressed by hand and given as plain text"

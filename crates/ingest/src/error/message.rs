@@ -12,32 +12,16 @@ impl fmt::Display for IngestError {
     fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             Self::Missing { path } => {
-                write!(
-                    formatter,
-                    "{}: expected a file, found nothing by this name",
-                    path.display()
-                )
+                write!(formatter, "{}: expected a file, found nothing by this name", path.display())
             }
             Self::Directory { path } => {
                 write!(formatter, "{}: expected a file, found a directory", path.display())
             }
             Self::Unreadable { path, reason } => {
-                write!(
-                    formatter,
-                    "{}: expected a readable file, found: {reason}",
-                    path.display()
-                )
+                write!(formatter, "{}: expected a readable file, found: {reason}", path.display())
             }
-            Self::NoRows {
-                path,
-                lines,
-                unfinished_line,
-            } => {
-                write!(
-                    formatter,
-                    "{}: expected rows of numbers, found no complete row",
-                    path.display()
-                )?;
+            Self::NoRows { path, lines, unfinished_line } => {
+                write!(formatter, "{}: expected rows of numbers, found no complete row", path.display())?;
                 match (unfinished_line, lines) {
                     (Some(line), _) => write!(formatter, ": line {line} has no line end"),
                     (None, 0) => formatter.write_str(": the file is empty"),
@@ -47,17 +31,10 @@ impl fmt::Display for IngestError {
                 }
             }
             Self::NotText { place, problem } => {
-                write!(
-                    formatter,
-                    "{place}: expected UTF-8 text, found {}",
-                    TextFinding(*problem)
-                )
+                write!(formatter, "{place}: expected UTF-8 text, found {}", TextFinding(*problem))
             }
             Self::LineTooLong { place, limit } => {
-                write!(
-                    formatter,
-                    "{place}: expected lines of at most {limit} bytes, found a longer one"
-                )
+                write!(formatter, "{place}: expected lines of at most {limit} bytes, found a longer one")
             }
             Self::GzipCutShort { path, lines } => {
                 write!(
@@ -92,12 +69,7 @@ impl fmt::Display for IngestError {
                     }
                 }
             }
-            Self::Ragged {
-                place,
-                expected,
-                found,
-                first_line,
-            } => write!(
+            Self::Ragged { place, expected, found, first_line } => write!(
                 formatter,
                 "{place}: expected {expected} {} as in line {first_line}, found {found}",
                 plural(*expected as u64, "field", "fields")
@@ -107,12 +79,7 @@ impl fmt::Display for IngestError {
                 "{place}: expected a column {column}, found {fields} {}",
                 plural(*fields as u64, "column", "columns")
             ),
-            Self::UnknownName {
-                place,
-                name,
-                nearest,
-                names,
-            } => {
+            Self::UnknownName { place, name, nearest, names } => {
                 write!(formatter, "{place}: expected a column named `{name}`, found ")?;
                 write_names(formatter, names)?;
                 if nearest.is_empty() {
@@ -133,33 +100,20 @@ impl fmt::Display for IngestError {
                 }
                 Ok(())
             }
-            Self::NoHeader {
-                place,
-                name,
-                fields,
-                candidate,
-            } => {
+            Self::NoHeader { place, name, fields, candidate } => {
                 write!(
                     formatter,
                     "{place}: expected a header of {fields} {} with `{name}` before this row, found ",
                     plural(*fields as u64, "name", "names")
                 )?;
                 match candidate {
-                    Some((line, names)) => write!(
-                        formatter,
-                        "{names} {} in line {line}",
-                        plural(*names as u64, "name", "names")
-                    ),
+                    Some((line, names)) => {
+                        write!(formatter, "{names} {} in line {line}", plural(*names as u64, "name", "names"))
+                    }
                     None => formatter.write_str("none"),
                 }
             }
-            Self::TimeNotIncreasing {
-                place,
-                found,
-                previous,
-                falls,
-                rows,
-            } => {
+            Self::TimeNotIncreasing { place, found, previous, falls, rows } => {
                 write!(formatter, "{place}: expected times that increase")?;
                 if let Some(column) = place.column {
                     write!(formatter, " in column {column}")?;
@@ -169,12 +123,7 @@ impl fmt::Display for IngestError {
                     ", found {found} after {previous}: {falls} of {rows} rows do not come after the row before"
                 )
             }
-            Self::NotAContinuation {
-                path,
-                first_time,
-                last_time,
-                previous_end,
-            } => write!(
+            Self::NotAContinuation { path, first_time, last_time, previous_end } => write!(
                 formatter,
                 "{}: expected frames after time {previous_end}, where the segments before end, found times {first_time} to {last_time}",
                 path.display()
@@ -188,24 +137,14 @@ impl fmt::Display for IngestError {
                 formatter,
                 "expected known times for a `discard` of time {discard}, found neither a time column nor an interval"
             ),
-            Self::Setting {
-                setting,
-                expected,
-                found,
-            } => {
+            Self::Setting { setting, expected, found } => {
                 write!(formatter, "`{setting}`: expected {expected}, found {found}")
             }
             Self::UnfinishedTable { place, found } => {
-                write!(
-                    formatter,
-                    "{place}: expected a line end after the last row, found `{found}` without one"
-                )
+                write!(formatter, "{place}: expected a line end after the last row, found `{found}` without one")
             }
             Self::TableTooLong { place, limit } => {
-                write!(
-                    formatter,
-                    "{place}: expected a table of at most {limit} rows, found more"
-                )
+                write!(formatter, "{place}: expected a table of at most {limit} rows, found more")
             }
         }
     }

@@ -18,28 +18,17 @@ pub struct Place {
 
 impl Place {
     pub(crate) fn line(path: &Path, line: u64) -> Self {
-        Self {
-            path: path.to_owned(),
-            line,
-            column: None,
-            character: None,
-        }
+        Self { path: path.to_owned(), line, column: None, character: None }
     }
 
     /// The place of the byte at `offset` of a line's text.
     pub(crate) fn byte(path: &Path, line: u64, text: &[u8], offset: usize) -> Self {
         let before = text.get(..offset).unwrap_or(text);
-        Self {
-            character: Some(String::from_utf8_lossy(before).chars().count() + 1),
-            ..Self::line(path, line)
-        }
+        Self { character: Some(String::from_utf8_lossy(before).chars().count() + 1), ..Self::line(path, line) }
     }
 
     pub(crate) fn in_column(self, column: usize) -> Self {
-        Self {
-            column: Some(column),
-            ..self
-        }
+        Self { column: Some(column), ..self }
     }
 }
 

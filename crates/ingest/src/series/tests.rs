@@ -59,12 +59,7 @@ fn column(number: usize) -> Column {
 }
 
 fn layout(separator: Separator, columns: &[usize], time: TimeSource) -> Layout {
-    Layout {
-        separator,
-        columns: columns.iter().copied().map(column).collect(),
-        time,
-        ..Layout::default()
-    }
+    Layout { separator, columns: columns.iter().copied().map(column).collect(), time, ..Layout::default() }
 }
 
 fn gzip(content: &[u8]) -> Vec<u8> {
@@ -213,19 +208,12 @@ fn segment(from: u32, to: u32) -> String {
 #[test]
 fn a_long_series_is_the_same_for_any_piece_size() {
     let folder = TempDir::new().unwrap();
-    let first = format!(
-        "\u{feff}# t å z\r\n{}\n# restarted\n{}12 3",
-        segment(0, 700),
-        segment(650, 5000)
-    );
+    let first = format!("\u{feff}# t å z\r\n{}\n# restarted\n{}12 3", segment(0, 700), segment(650, 5000));
     let paths = [folder.path().join("a.txt"), folder.path().join("b.txt.gz")];
     std::fs::write(&paths[0], first).unwrap();
     std::fs::write(&paths[1], gzip(segment(4990, 6000).as_bytes())).unwrap();
     let layout = layout(Separator::Whitespace, &[2, 1], TimeSource::Column(column(1)));
-    let selection = Selection {
-        discard: Discard::Fraction(0.05),
-        stride: NonZeroU64::new(3).unwrap(),
-    };
+    let selection = Selection { discard: Discard::Fraction(0.05), stride: NonZeroU64::new(3).unwrap() };
     let usual = outcome(&paths, &layout, &selection, CHUNK);
     let report = usual.2.as_ref().unwrap();
     assert_eq!((report.frames, report.discarded, report.kept), (6000, 300, 1900));
@@ -239,10 +227,8 @@ fn a_long_series_is_the_same_for_any_piece_size() {
 fn a_file_cut_at_any_byte_gives_its_whole_rows_and_nothing_else() {
     let whole = "\u{feff}# t z\r\n0.5 1.25 a\r\n\n1.5 -2.5e1 bé\n# note\n2.5 3.0D2 c\n";
     let rows = [(0.5_f64, 1.25_f64), (1.5, -25.0), (2.5, 300.0)];
-    let row_ends: Vec<usize> = ["a\r\n", "bé\n", "c\n"]
-        .iter()
-        .map(|end| whole.find(end).unwrap() + end.len())
-        .collect();
+    let row_ends: Vec<usize> =
+        ["a\r\n", "bé\n", "c\n"].iter().map(|end| whole.find(end).unwrap() + end.len()).collect();
     let layout = layout(Separator::Whitespace, &[2], TimeSource::Column(column(1)));
     let folder = TempDir::new().unwrap();
     let path = folder.path().join("run.txt");
@@ -250,10 +236,8 @@ fn a_file_cut_at_any_byte_gives_its_whole_rows_and_nothing_else() {
         std::fs::write(&path, &whole.as_bytes()[..length]).unwrap();
         let (found, _, result) = outcome(std::slice::from_ref(&path), &layout, &Selection::default(), CHUNK);
         let complete = row_ends.iter().filter(|end| **end <= length).count();
-        let expected: Vec<_> = rows[..complete]
-            .iter()
-            .map(|(time, value)| (Some(time.to_bits()), vec![value.to_bits()]))
-            .collect();
+        let expected: Vec<_> =
+            rows[..complete].iter().map(|(time, value)| (Some(time.to_bits()), vec![value.to_bits()])).collect();
         let found: Vec<_> = found.into_iter().map(|(_, _, time, values)| (time, values)).collect();
         assert_eq!(found, expected, "{length}");
         match result {
@@ -262,11 +246,7 @@ fn a_file_cut_at_any_byte_gives_its_whole_rows_and_nothing_else() {
                 let last_line = whole.as_bytes()[..length].rsplit(|byte| *byte == b'\n').next().unwrap();
                 let is_row = last_line.first().is_some_and(u8::is_ascii_digit);
                 assert_eq!(
-                    report
-                        .notices
-                        .iter()
-                        .filter(|notice| matches!(notice, Notice::UnfinishedLastLine { .. }))
-                        .count(),
+                    report.notices.iter().filter(|notice| matches!(notice, Notice::UnfinishedLastLine { .. })).count(),
                     usize::from(is_row),
                     "{length}"
                 );

@@ -16,9 +16,7 @@ pub struct Files {
 
 impl Files {
     pub fn new() -> Self {
-        Self {
-            folder: TempDir::new().unwrap(),
-        }
+        Self { folder: TempDir::new().unwrap() }
     }
 
     pub fn add(&self, name: &str, content: impl AsRef<[u8]>) -> PathBuf {
@@ -52,19 +50,12 @@ pub fn name(column: &str) -> Column {
 
 /// Column 2 with the times of column 1.
 pub fn timed() -> Layout {
-    Layout {
-        columns: vec![number(2)],
-        time: TimeSource::Column(number(1)),
-        ..Layout::default()
-    }
+    Layout { columns: vec![number(2)], time: TimeSource::Column(number(1)), ..Layout::default() }
 }
 
 /// These columns, without times.
 pub fn columns(columns: &[Column]) -> Layout {
-    Layout {
-        columns: columns.to_vec(),
-        ..Layout::default()
-    }
+    Layout { columns: columns.to_vec(), ..Layout::default() }
 }
 
 pub fn read(paths: &[PathBuf], layout: &Layout, selection: &Selection) -> Result<(SeriesReport, Rows), IngestError> {

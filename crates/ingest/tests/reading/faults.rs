@@ -18,10 +18,7 @@ fn message(content: impl AsRef<[u8]>, layout: &Layout) -> String {
 }
 
 fn comma(layout: Layout) -> Layout {
-    Layout {
-        separator: Separator::Comma,
-        ..layout
-    }
+    Layout { separator: Separator::Comma, ..layout }
 }
 
 #[test]
@@ -29,10 +26,7 @@ fn a_missing_file_is_named() {
     let files = Files::new();
     let path = files.folder.path().join("gone.txt");
     let error = read(std::slice::from_ref(&path), &timed(), &Selection::default()).unwrap_err();
-    assert_eq!(
-        files.relative(&error.to_string()),
-        "gone.txt: expected a file, found nothing by this name"
-    );
+    assert_eq!(files.relative(&error.to_string()), "gone.txt: expected a file, found nothing by this name");
     assert_eq!(error.path(), Some(path.as_path()));
     assert_eq!(error.place(), None);
 }
@@ -43,10 +37,7 @@ fn a_directory_is_told_from_a_file() {
     let path = files.folder.path().join("runs");
     std::fs::create_dir(&path).unwrap();
     let error = read(&[path], &timed(), &Selection::default()).unwrap_err();
-    assert_eq!(
-        files.relative(&error.to_string()),
-        "runs: expected a file, found a directory"
-    );
+    assert_eq!(files.relative(&error.to_string()), "runs: expected a file, found a directory");
 }
 
 #[cfg(unix)]
@@ -57,18 +48,12 @@ fn a_path_that_leads_through_a_file_gives_the_reason_of_the_system() {
     let error = read(&[path], &timed(), &Selection::default()).unwrap_err();
     assert!(matches!(error, IngestError::Unreadable { .. }), "{error:?}");
     let message = files.relative(&error.to_string());
-    assert!(
-        message.starts_with("run.txt/deeper.txt: expected a readable file, found: "),
-        "{message}"
-    );
+    assert!(message.starts_with("run.txt/deeper.txt: expected a readable file, found: "), "{message}");
 }
 
 #[test]
 fn an_empty_file_is_refused() {
-    assert_eq!(
-        message("", &timed()),
-        "run.txt: expected rows of numbers, found no complete row: the file is empty"
-    );
+    assert_eq!(message("", &timed()), "run.txt: expected rows of numbers, found no complete row: the file is empty");
 }
 
 #[test]
@@ -77,19 +62,13 @@ fn a_file_of_comments_and_blank_lines_is_refused() {
         message("# time z\n\n \t\n", &timed()),
         "run.txt: expected rows of numbers, found no complete row in 3 lines"
     );
-    assert_eq!(
-        message("time z\n", &timed()),
-        "run.txt: expected rows of numbers, found no complete row in 1 line"
-    );
+    assert_eq!(message("time z\n", &timed()), "run.txt: expected rows of numbers, found no complete row in 1 line");
 }
 
 #[test]
 fn a_file_whose_only_row_has_no_line_end_is_refused() {
     let (message, error) = fault("# time z\n0.5 1.5", &timed());
-    assert_eq!(
-        message,
-        "run.txt: expected rows of numbers, found no complete row: line 2 has no line end"
-    );
+    assert_eq!(message, "run.txt: expected rows of numbers, found no complete row: line 2 has no line end");
     assert_eq!(
         error.advice(),
         "let the run write at least one whole row; if the line is complete, end it with a line break"
@@ -123,10 +102,7 @@ fn a_first_row_with_some_text_and_some_numbers_is_not_a_header() {
 
 #[test]
 fn a_second_header_is_a_fault() {
-    assert_eq!(
-        message("time z\ntime z\n0 1\n", &timed()),
-        "run.txt:2:1: expected a number in column 1, found `time`"
-    );
+    assert_eq!(message("time z\ntime z\n0 1\n", &timed()), "run.txt:2:1: expected a number in column 1, found `time`");
 }
 
 #[test]
@@ -143,17 +119,8 @@ fn a_comma_in_the_text_leads_to_advice_about_the_separator() {
 fn values_that_are_not_finite_are_refused_in_every_spelling() {
     for text in ["nan", "-NaN", "inf", "Infinity", "-1.#IND"] {
         let (message, error) = fault(format!("0 1.5\n1 {text}\n"), &timed());
-        assert_eq!(
-            message,
-            format!("run.txt:2:3: expected a number in column 2, found `{text}`, which is not finite")
-        );
-        assert!(matches!(
-            error,
-            IngestError::BadNumber {
-                problem: NumberProblem::NotFinite,
-                ..
-            }
-        ));
+        assert_eq!(message, format!("run.txt:2:3: expected a number in column 2, found `{text}`, which is not finite"));
+        assert!(matches!(error, IngestError::BadNumber { problem: NumberProblem::NotFinite, .. }));
     }
 }
 
@@ -184,10 +151,7 @@ fn a_number_too_large_for_a_float_is_refused() {
 #[test]
 fn an_empty_field_is_refused_where_it_is_wanted() {
     let layout = comma(timed());
-    assert_eq!(
-        message("0,1.5\n1, \n", &layout),
-        "run.txt:2:4: expected a number in column 2, found an empty field"
-    );
+    assert_eq!(message("0,1.5\n1, \n", &layout), "run.txt:2:4: expected a number in column 2, found an empty field");
 }
 
 #[test]
@@ -200,30 +164,15 @@ fn a_quote_that_is_not_closed_is_refused() {
 
 #[test]
 fn a_row_with_fewer_or_more_fields_than_the_first_is_refused() {
-    assert_eq!(
-        message("#\n0 1.5 7\n1 2.5\n", &timed()),
-        "run.txt:3: expected 3 fields as in line 2, found 2"
-    );
-    assert_eq!(
-        message("0 1.5\n1 2.5 8 9\n", &timed()),
-        "run.txt:2: expected 2 fields as in line 1, found 4"
-    );
+    assert_eq!(message("#\n0 1.5 7\n1 2.5\n", &timed()), "run.txt:3: expected 3 fields as in line 2, found 2");
+    assert_eq!(message("0 1.5\n1 2.5 8 9\n", &timed()), "run.txt:2: expected 2 fields as in line 1, found 4");
 }
 
 #[test]
 fn a_column_beyond_the_row_is_refused() {
-    assert_eq!(
-        message("0 1.5\n", &columns(&[number(4)])),
-        "run.txt:1: expected a column 4, found 2 columns"
-    );
-    let with_time = Layout {
-        time: TimeSource::Column(number(3)),
-        ..columns(&[number(1)])
-    };
-    assert_eq!(
-        message("1.5\n", &with_time),
-        "run.txt:1: expected a column 3, found 1 column"
-    );
+    assert_eq!(message("0 1.5\n", &columns(&[number(4)])), "run.txt:1: expected a column 4, found 2 columns");
+    let with_time = Layout { time: TimeSource::Column(number(3)), ..columns(&[number(1)]) };
+    assert_eq!(message("1.5\n", &with_time), "run.txt:1: expected a column 3, found 1 column");
 }
 
 #[test]
@@ -246,10 +195,7 @@ fn an_unknown_name_is_answered_with_the_nearest_and_all_names() {
 fn a_long_list_of_names_is_cut() {
     let names: Vec<String> = (0..25).map(|index| format!("c{index}")).collect();
     let numbers = vec!["3"; 25].join(" ");
-    let message = message(
-        format!("{}\n{numbers}\n", names.join(" ")),
-        &columns(&[name("pressure")]),
-    );
+    let message = message(format!("{}\n{numbers}\n", names.join(" ")), &columns(&[name("pressure")]));
     assert!(message.ends_with("`c18`, `c19` and 5 more"), "{message}");
 }
 
@@ -269,23 +215,14 @@ fn a_name_that_stands_twice_is_refused_only_when_it_is_wanted() {
 #[test]
 fn a_name_without_a_header_is_refused() {
     let (message, error) = fault("0 1.5\n", &columns(&[name("z")]));
-    assert_eq!(
-        message,
-        "run.txt:1: expected a header of 2 names with `z` before this row, found none"
-    );
-    assert_eq!(
-        error.advice(),
-        "give the column by its number, or add a header line with one name for each column"
-    );
+    assert_eq!(message, "run.txt:1: expected a header of 2 names with `z` before this row, found none");
+    assert_eq!(error.advice(), "give the column by its number, or add a header line with one name for each column");
 }
 
 #[test]
 fn a_header_of_another_width_is_shown() {
     let (message, error) = fault("#! NAMES time z\n0 1.5\n", &columns(&[name("z")]));
-    assert_eq!(
-        message,
-        "run.txt:2: expected a header of 2 names with `z` before this row, found 4 names in line 1"
-    );
+    assert_eq!(message, "run.txt:2: expected a header of 2 names with `z` before this row, found 4 names in line 1");
     assert_eq!(
         error.advice(),
         "give the column by its number; if words stand before the names in a comment, add them to the comment prefix"
@@ -294,14 +231,8 @@ fn a_header_of_another_width_is_shown() {
 
 #[test]
 fn a_zero_byte_anywhere_is_not_text() {
-    assert_eq!(
-        message(b"0 1.5\n1 2\0.5\n", &timed()),
-        "run.txt:2:4: expected UTF-8 text, found a zero byte"
-    );
-    assert_eq!(
-        message(b"#\0\n1 2\n", &timed()),
-        "run.txt:1:2: expected UTF-8 text, found a zero byte"
-    );
+    assert_eq!(message(b"0 1.5\n1 2\0.5\n", &timed()), "run.txt:2:4: expected UTF-8 text, found a zero byte");
+    assert_eq!(message(b"#\0\n1 2\n", &timed()), "run.txt:1:2: expected UTF-8 text, found a zero byte");
     assert_eq!(
         message([0x7f, b'E', b'L', b'F', 2, 0, 0], &timed()),
         "run.txt:1:6: expected UTF-8 text, found a zero byte"
@@ -312,13 +243,7 @@ fn a_zero_byte_anywhere_is_not_text() {
 fn a_byte_that_is_not_utf_8_is_refused_in_a_row() {
     let (message, error) = fault(b"0 1.5 b\n1 2.5 \xe5\n", &timed());
     assert_eq!(message, "run.txt:2:7: expected UTF-8 text, found the byte 0xe5");
-    assert!(matches!(
-        error,
-        IngestError::NotText {
-            problem: TextProblem::InvalidByte(0xe5),
-            ..
-        }
-    ));
+    assert!(matches!(error, IngestError::NotText { problem: TextProblem::InvalidByte(0xe5), .. }));
 }
 
 #[test]
@@ -326,20 +251,14 @@ fn utf_16_is_named() {
     for mark in [b"\xff\xfe", b"\xfe\xff"] {
         let mut content = mark.to_vec();
         content.extend_from_slice(b"0\0 \x001\0\n\0");
-        assert_eq!(
-            message(content, &timed()),
-            "run.txt:1:1: expected UTF-8 text, found UTF-16 or UTF-32 text"
-        );
+        assert_eq!(message(content, &timed()), "run.txt:1:1: expected UTF-8 text, found UTF-16 or UTF-32 text");
     }
 }
 
 #[test]
 fn a_line_that_never_ends_is_refused() {
     let content = format!("0 1\n{}", "1234567 ".repeat(200_000));
-    assert_eq!(
-        message(content, &timed()),
-        "run.txt:2: expected lines of at most 1048576 bytes, found a longer one"
-    );
+    assert_eq!(message(content, &timed()), "run.txt:2: expected lines of at most 1048576 bytes, found a longer one");
 }
 
 #[test]
@@ -362,10 +281,7 @@ fn gzip_data_with_a_wrong_checksum_are_refused() {
     let checksum = bytes.len() - 8;
     bytes[checksum] ^= 0x10;
     let (message, error) = fault(&bytes, &timed());
-    assert!(
-        message.starts_with("run.txt: expected valid gzip data, found a fault after line 2: "),
-        "{message}"
-    );
+    assert!(message.starts_with("run.txt: expected valid gzip data, found a fault after line 2: "), "{message}");
     assert!(matches!(error, IngestError::GzipCorrupt { lines: 2, .. }));
 }
 
@@ -389,10 +305,7 @@ fn a_time_column_that_wanders_is_refused() {
         writeln!(content, "{time} {row}").unwrap();
     }
     let (message, error) = fault(content, &timed());
-    assert!(
-        message.contains(": expected times that increase in column 1, found "),
-        "{message}"
-    );
+    assert!(message.contains(": expected times that increase in column 1, found "), "{message}");
     assert!(matches!(error, IngestError::TimeNotIncreasing { .. }));
 }
 
@@ -435,10 +348,7 @@ fn a_discard_that_takes_everything_is_refused() {
     let files = Files::new();
     let path = files.add("run.txt", "0 1\n2.5 2\n5 3\n");
     for discard in [Discard::Frames(3), Discard::Time(5.5)] {
-        let selection = Selection {
-            discard,
-            ..Selection::default()
-        };
+        let selection = Selection { discard, ..Selection::default() };
         let error = read(std::slice::from_ref(&path), &timed(), &selection).unwrap_err();
         assert_eq!(
             files.relative(&error.to_string()),
@@ -451,10 +361,7 @@ fn a_discard_that_takes_everything_is_refused() {
 fn a_discard_by_time_needs_times() {
     let files = Files::new();
     let path = files.add("run.txt", "0 1\n");
-    let selection = Selection {
-        discard: Discard::Time(2.5),
-        ..Selection::default()
-    };
+    let selection = Selection { discard: Discard::Time(2.5), ..Selection::default() };
     let error = read(&[path], &columns(&[number(1)]), &selection).unwrap_err();
     assert_eq!(
         error.to_string(),
@@ -467,13 +374,8 @@ fn settings_outside_their_range_are_refused() {
     let files = Files::new();
     let path = files.add("run.txt", "0 1\n");
     let refused = |layout: &Layout, discard: Discard| {
-        let selection = Selection {
-            discard,
-            ..Selection::default()
-        };
-        read(std::slice::from_ref(&path), layout, &selection)
-            .unwrap_err()
-            .to_string()
+        let selection = Selection { discard, ..Selection::default() };
+        read(std::slice::from_ref(&path), layout, &selection).unwrap_err().to_string()
     };
     for fraction in [-0.25, 1.0, 1.5, f64::NAN, f64::INFINITY] {
         assert_eq!(
@@ -488,19 +390,13 @@ fn settings_outside_their_range_are_refused() {
         );
     }
     for interval in [0.0, -2.5, f64::NAN, f64::INFINITY] {
-        let layout = Layout {
-            time: TimeSource::Interval(interval),
-            ..timed()
-        };
+        let layout = Layout { time: TimeSource::Interval(interval), ..timed() };
         assert_eq!(
             refused(&layout, Discard::Nothing),
             format!("`interval`: expected a finite number above 0, found {interval}")
         );
     }
-    let without_prefix = Layout {
-        comments: vec!["#".into(), String::new()],
-        ..timed()
-    };
+    let without_prefix = Layout { comments: vec!["#".into(), String::new()], ..timed() };
     assert_eq!(
         refused(&without_prefix, Discard::Nothing),
         "`comments`: expected prefixes of at least one character, found an empty prefix"

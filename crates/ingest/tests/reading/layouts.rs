@@ -16,19 +16,11 @@ fn separated(separator: Separator, layout: Layout) -> Layout {
 #[test]
 fn line_ends_separators_and_compression_do_not_change_the_values() {
     let rows = [[0.5, -1.25e-7, 40.0], [1.5, 3.0625, -0.0], [2.5, 1e22, 7.5]];
-    for (separator, joint) in [
-        (Separator::Whitespace, "  "),
-        (Separator::Comma, " ,"),
-        (Separator::Tab, "\t"),
-    ] {
+    for (separator, joint) in [(Separator::Whitespace, "  "), (Separator::Comma, " ,"), (Separator::Tab, "\t")] {
         for line_end in ["\n", "\r\n"] {
             for mark in ["", "\u{feff}"] {
-                let body = rows.map(|row| {
-                    format!(
-                        " {} {line_end}{line_end}",
-                        row.map(|value| value.to_string()).join(joint)
-                    )
-                });
+                let body =
+                    rows.map(|row| format!(" {} {line_end}{line_end}", row.map(|value| value.to_string()).join(joint)));
                 let content = format!("{mark}# a, b, c{line_end}{}", body.concat());
                 let layout = separated(separator, columns(&[number(3), number(1), number(2)]));
                 let expected = rows.map(|[a, b, c]| vec![c, a, b]);
@@ -49,48 +41,33 @@ fn concatenated_gzip_members_are_one_file() {
 #[test]
 fn fortran_exponents_are_read() {
     assert_eq!(
-        values(
-            "1.0D+03 -2.5d-2 +4.0\n1.5+103 2.5-104 1.5E2\n",
-            &columns(&[number(1), number(2), number(3)])
-        ),
+        values("1.0D+03 -2.5d-2 +4.0\n1.5+103 2.5-104 1.5E2\n", &columns(&[number(1), number(2), number(3)])),
         [[1000.0, -0.025, 4.0], [1.5e103, 2.5e-104, 150.0]]
     );
 }
 
 #[test]
 fn columns_that_are_not_wanted_may_hold_text_or_nothing() {
-    assert_eq!(
-        values("1.5 A nan\n2.5 B ****\n", &columns(&[number(1)])),
-        [[1.5], [2.5]]
-    );
+    assert_eq!(values("1.5 A nan\n2.5 B ****\n", &columns(&[number(1)])), [[1.5], [2.5]]);
     let layout = separated(Separator::Comma, columns(&[number(2)]));
     assert_eq!(values("\"x, y\",1.5,\n,2.5,\n", &layout), [[1.5], [2.5]]);
 }
 
 #[test]
 fn comments_are_passed_over_anywhere_and_for_every_prefix() {
-    let layout = Layout {
-        comments: vec!["#".into(), "@".into(), "//".into()],
-        ..columns(&[number(1)])
-    };
+    let layout = Layout { comments: vec!["#".into(), "@".into(), "//".into()], ..columns(&[number(1)]) };
     assert_eq!(values("@ a\n1.5\n  # b\n// c\n2.5\n#d", &layout), [[1.5], [2.5]]);
 }
 
 #[test]
 fn a_comment_in_another_encoding_does_no_harm() {
-    assert_eq!(
-        values(b"# d (\xc5)\n1.5\n# \xff\n2.5\n", &columns(&[number(1)])),
-        [[1.5], [2.5]]
-    );
+    assert_eq!(values(b"# d (\xc5)\n1.5\n# \xff\n2.5\n", &columns(&[number(1)])), [[1.5], [2.5]]);
 }
 
 #[test]
 fn names_come_from_the_last_fitting_comment_before_the_data() {
     let content = "# z t old\n# t z\n# written by hand in summer\n1 2\n# z t\n3 4\n";
-    assert_eq!(
-        values(content, &columns(&[name("z"), name("t")])),
-        [[2.0, 1.0], [4.0, 3.0]]
-    );
+    assert_eq!(values(content, &columns(&[name("z"), name("t")])), [[2.0, 1.0], [4.0, 3.0]]);
 }
 
 #[test]
@@ -120,21 +97,14 @@ fn names_may_stand_in_quotes_and_hold_blanks_and_commas() {
 
 #[test]
 fn a_header_line_is_passed_over_when_columns_are_numbers() {
-    assert_eq!(
-        values("Time (ps) Distance (nm)\n1 2\n", &columns(&[number(2)])),
-        [[2.0]]
-    );
+    assert_eq!(values("Time (ps) Distance (nm)\n1 2\n", &columns(&[number(2)])), [[2.0]]);
 }
 
 #[test]
 fn every_segment_is_read_by_its_own_header() {
     let files = Files::new();
     let paths = [files.add("a.txt", "t z\n1 20\n"), files.add("b.txt", "z t x\n30 2 7\n")];
-    let layout = Layout {
-        columns: vec![name("z")],
-        time: TimeSource::Column(name("t")),
-        ..Layout::default()
-    };
+    let layout = Layout { columns: vec![name("z")], time: TimeSource::Column(name("t")), ..Layout::default() };
     let (report, rows) = read(&paths, &layout, &Selection::default()).unwrap();
     assert_eq!(rows.values, [[20.0], [30.0]]);
     assert_eq!(rows.times, [1.0, 2.0]);

@@ -7,10 +7,7 @@ use crate::common::{Files, columns, gzip, number, read, timed};
 use spandrel_ingest::{Discard, Layout, Notice, ReadError, Selection, TimeSource, read_series};
 
 fn selection(discard: Discard, stride: u64) -> Selection {
-    Selection {
-        discard,
-        stride: NonZeroU64::new(stride).unwrap(),
-    }
+    Selection { discard, stride: NonZeroU64::new(stride).unwrap() }
 }
 
 /// Rows of frames `from..to`: the time is half the frame's number, the value thrice that number plus `offset`.
@@ -25,17 +22,11 @@ fn frames(from: u32, to: u32, offset: f64) -> String {
 #[test]
 fn segments_are_joined_in_the_order_given() {
     let files = Files::new();
-    let paths = [
-        files.add("b.txt", frames(0, 4, 0.0)),
-        files.add("a.txt", gzip(frames(4, 9, 0.0).as_bytes())),
-    ];
+    let paths = [files.add("b.txt", frames(0, 4, 0.0)), files.add("a.txt", gzip(frames(4, 9, 0.0).as_bytes()))];
     let (report, rows) = read(&paths, &timed(), &Selection::default()).unwrap();
     let expected: Vec<Vec<f64>> = (0..9).map(|frame| vec![3.0 * f64::from(frame)]).collect();
     assert_eq!(rows.values, expected);
-    assert_eq!(
-        rows.times,
-        (0..9).map(|frame| 0.5 * f64::from(frame)).collect::<Vec<_>>()
-    );
+    assert_eq!(rows.times, (0..9).map(|frame| 0.5 * f64::from(frame)).collect::<Vec<_>>());
     assert_eq!(rows.places[3..5], [(0, 4), (1, 1)]);
     assert_eq!(rows.chunk_lengths, [4, 5]);
     assert_eq!((report.frames, report.discarded, report.kept), (9, 0, 9));
@@ -67,31 +58,16 @@ fn of_frames_written_twice_the_first_copy_is_kept() {
     assert_eq!(
         report.notices,
         [
-            Notice::RepeatedFrames {
-                path: paths[0].clone(),
-                first_line: 9,
-                count: 3,
-                first_time: 2.0,
-                last_time: 3.0
-            },
-            Notice::RepeatedFrames {
-                path: paths[1].clone(),
-                first_line: 1,
-                count: 1,
-                first_time: 4.5,
-                last_time: 4.5
-            },
+            Notice::RepeatedFrames { path: paths[0].clone(), first_line: 9, count: 3, first_time: 2.0, last_time: 3.0 },
+            Notice::RepeatedFrames { path: paths[1].clone(), first_line: 1, count: 1, first_time: 4.5, last_time: 4.5 },
         ]
     );
     assert_eq!(
         files.relative(&report.notices[0].to_string()),
         "a.txt:9: 3 rows from time 2 to 3 repeat earlier frames and were left out"
     );
-    let counts: Vec<_> = report
-        .segments
-        .iter()
-        .map(|segment| (segment.rows_read, segment.rows_repeated, segment.rows_kept))
-        .collect();
+    let counts: Vec<_> =
+        report.segments.iter().map(|segment| (segment.rows_read, segment.rows_repeated, segment.rows_kept)).collect();
     assert_eq!(counts, [(13, 3, 10), (5, 1, 4)]);
     assert_eq!(report.frames, 14);
 }
@@ -105,13 +81,7 @@ fn notices_of_many_restarts_are_gathered_in_one() {
     let (report, rows) = read(&[path], &timed(), &Selection::default()).unwrap();
     assert_eq!(rows.values.len(), 4 * 131 + 2);
     assert_eq!(report.notices.len(), 101);
-    assert_eq!(
-        report.notices[100],
-        Notice::MoreRepeatedFrames {
-            stretches: 30,
-            count: 60
-        }
-    );
+    assert_eq!(report.notices[100], Notice::MoreRepeatedFrames { stretches: 30, count: 60 });
 }
 
 #[test]
@@ -120,14 +90,7 @@ fn a_last_line_without_an_end_is_left_out_even_if_it_could_be_read() {
     let path = files.add("run.txt", "0 1.5\n1 2.5\n2 3.5");
     let (report, rows) = read(std::slice::from_ref(&path), &timed(), &Selection::default()).unwrap();
     assert_eq!(rows.values, [[1.5], [2.5]]);
-    assert_eq!(
-        report.notices,
-        [Notice::UnfinishedLastLine {
-            path,
-            line: 3,
-            text: "2 3.5".into()
-        }]
-    );
+    assert_eq!(report.notices, [Notice::UnfinishedLastLine { path, line: 3, text: "2 3.5".into() }]);
     assert_eq!(
         files.relative(&report.notices[0].to_string()),
         "run.txt:3: the last line has no line end and was left out: `2 3.5`"
@@ -137,10 +100,7 @@ fn a_last_line_without_an_end_is_left_out_even_if_it_could_be_read() {
 #[test]
 fn an_unfinished_line_between_segments_costs_one_frame_only() {
     let files = Files::new();
-    let paths = [
-        files.add("a.txt", "0 1.5\n1 2.5\n2 3."),
-        files.add("b.txt", "2 3.75\n3 4.5\n"),
-    ];
+    let paths = [files.add("a.txt", "0 1.5\n1 2.5\n2 3."), files.add("b.txt", "2 3.75\n3 4.5\n")];
     let (report, rows) = read(&paths, &timed(), &Selection::default()).unwrap();
     assert_eq!(rows.values, [[1.5], [2.5], [3.75], [4.5]]);
     assert_eq!(report.notices.len(), 1);
@@ -159,10 +119,7 @@ fn an_unfinished_comment_or_blank_line_is_not_worth_a_notice() {
 #[test]
 fn stride_is_counted_over_all_segments_after_the_discard() {
     let files = Files::new();
-    let paths = [
-        files.add("a.txt", frames(0, 6, 0.0)),
-        files.add("b.txt", frames(5, 12, 0.0)),
-    ];
+    let paths = [files.add("a.txt", frames(0, 6, 0.0)), files.add("b.txt", frames(5, 12, 0.0))];
     let kept = |discard, stride| {
         let (report, rows) = read(&paths, &timed(), &selection(discard, stride)).unwrap();
         assert_eq!(report.frames, 12);
@@ -191,22 +148,12 @@ fn a_discarded_time_is_counted_from_the_first_frame() {
 #[test]
 fn a_stated_interval_gives_the_times_over_all_segments() {
     let files = Files::new();
-    let paths = [
-        files.add("a.txt", frames(0, 3, 0.0)),
-        files.add("b.txt", frames(0, 4, 0.0)),
-    ];
-    let layout = Layout {
-        time: TimeSource::Interval(0.25),
-        ..columns(&[number(2)])
-    };
+    let paths = [files.add("a.txt", frames(0, 3, 0.0)), files.add("b.txt", frames(0, 4, 0.0))];
+    let layout = Layout { time: TimeSource::Interval(0.25), ..columns(&[number(2)]) };
     let (report, rows) = read(&paths, &layout, &selection(Discard::Time(0.5), 2)).unwrap();
     assert_eq!(rows.times, [0.5, 1.0, 1.5]);
     assert_eq!(report.interval, Some(0.25));
-    let spans: Vec<_> = report
-        .segments
-        .iter()
-        .map(|segment| (segment.first_time, segment.last_time))
-        .collect();
+    let spans: Vec<_> = report.segments.iter().map(|segment| (segment.first_time, segment.last_time)).collect();
     assert_eq!(spans, [(Some(0.0), Some(0.5)), (Some(0.75), Some(1.5))]);
 }
 
@@ -228,10 +175,7 @@ fn digest_and_size_are_those_of_the_bytes_on_disk() {
     let plain = files.add("run.txt", "0.5 abc 7\n");
     let (report, _) = read(&[plain], &columns(&[number(1)]), &Selection::default()).unwrap();
     assert_eq!(report.segments[0].bytes, 10);
-    assert_eq!(
-        report.segments[0].sha256,
-        "0bc4943d2e402c53207cf16832a4dc62b8bacac5e364a0651901f86440fcbea6"
-    );
+    assert_eq!(report.segments[0].sha256, "0bc4943d2e402c53207cf16832a4dc62b8bacac5e364a0651901f86440fcbea6");
     // The same row as GNU gzip packs it.
     let packed: &[u8] = &[
         31, 139, 8, 0, 0, 0, 0, 0, 0, 3, 51, 208, 51, 85, 72, 76, 74, 86, 48, 231, 2, 0, 15, 120, 140, 130, 10, 0, 0, 0,
@@ -239,10 +183,7 @@ fn digest_and_size_are_those_of_the_bytes_on_disk() {
     let path = files.add("run.gz", packed);
     let (report, _) = read(&[path], &columns(&[number(1)]), &Selection::default()).unwrap();
     assert_eq!(report.segments[0].bytes, packed.len() as u64);
-    assert_eq!(
-        report.segments[0].sha256,
-        "666d6c28a260d399f5d4ec1c8445533f4837ba00ca339e18677be33ff2705cd5"
-    );
+    assert_eq!(report.segments[0].sha256, "666d6c28a260d399f5d4ec1c8445533f4837ba00ca339e18677be33ff2705cd5");
 }
 
 #[test]
@@ -264,16 +205,12 @@ fn the_caller_is_asked_now_and_then_while_nothing_is_kept() {
     let files = Files::new();
     let path = files.add("run.txt", "2.5\n".repeat(200_000));
     for discard in [Discard::Frames(199_999), Discard::Fraction(0.999)] {
-        let result = read_series(
-            std::slice::from_ref(&path),
-            &columns(&[number(1)]),
-            &selection(discard, 1),
-            &mut |chunk| {
+        let result =
+            read_series(std::slice::from_ref(&path), &columns(&[number(1)]), &selection(discard, 1), &mut |chunk| {
                 assert!(chunk.is_empty());
                 assert!(chunk.bytes_read() > 0);
                 Err("enough")
-            },
-        );
+            });
         assert_eq!(result, Err(ReadError::Sink("enough")));
     }
 }
@@ -282,10 +219,7 @@ fn the_caller_is_asked_now_and_then_while_nothing_is_kept() {
 fn the_same_column_can_be_value_and_time() {
     let files = Files::new();
     let path = files.add("run.txt", "0.5 1\n1.5 2\n");
-    let layout = Layout {
-        columns: vec![number(1), number(2), number(1)],
-        ..timed()
-    };
+    let layout = Layout { columns: vec![number(1), number(2), number(1)], ..timed() };
     let (_, rows) = read(&[path], &layout, &Selection::default()).unwrap();
     assert_eq!(rows.values, [[0.5, 1.0, 0.5], [1.5, 2.0, 1.5]]);
     assert_eq!(rows.times, [0.5, 1.5]);

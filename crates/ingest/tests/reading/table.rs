@@ -12,10 +12,7 @@ fn read(content: &str, separator: Separator) -> Result<Table, (String, IngestErr
     let layout = TableLayout {
         separator,
         comments: vec!["#".into()],
-        columns: [
-            Column::Number(NonZeroUsize::new(3).unwrap()),
-            Column::Number(NonZeroUsize::new(1).unwrap()),
-        ],
+        columns: [Column::Number(NonZeroUsize::new(3).unwrap()), Column::Number(NonZeroUsize::new(1).unwrap())],
     };
     read_table(&path, &layout).map_err(|error| {
         let folder = format!("{}/", folder.path().display());
@@ -36,14 +33,8 @@ fn the_wanted_columns_come_whole_and_with_their_lines() {
 #[test]
 fn a_last_row_without_a_line_end_is_refused() {
     let (message, error) = read("7.5,x,0.5\n-2.5,y,1.5", Separator::Comma).unwrap_err();
-    assert_eq!(
-        message,
-        "table.txt:2: expected a line end after the last row, found `-2.5,y,1.5` without one"
-    );
-    assert_eq!(
-        error.advice(),
-        "check that the row is complete, and end it with a line break"
-    );
+    assert_eq!(message, "table.txt:2: expected a line end after the last row, found `-2.5,y,1.5` without one");
+    assert_eq!(error.advice(), "check that the row is complete, and end it with a line break");
 }
 
 #[test]
@@ -56,8 +47,5 @@ fn a_fault_in_a_row_is_placed() {
 fn a_table_of_more_than_a_million_rows_is_refused() {
     let content = "7.5 x 0.5\n".repeat(1_000_001);
     let (message, _) = read(&content, Separator::Whitespace).unwrap_err();
-    assert_eq!(
-        message,
-        "table.txt:1000001: expected a table of at most 1000000 rows, found more"
-    );
+    assert_eq!(message, "table.txt:1000001: expected a table of at most 1000000 rows, found more");
 }

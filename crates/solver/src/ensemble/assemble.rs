@@ -2,24 +2,12 @@
 
 use super::error::EnsembleError;
 use super::shared_points::{has_axes, shared_points};
+use super::window_data::WindowData;
 use super::{Ensemble, Points, Stream, Window};
 use crate::condense::{BinGrid, CondensedReplica};
 use crate::series::{BatchRule, MeanLag};
-use spandrel_bias::{Axis, Bias};
+use spandrel_bias::Axis;
 use std::collections::BTreeMap;
-
-/// A window as it is handed in: its condensed runs and what is known of it.
-#[derive(Debug, Clone, PartialEq)]
-pub struct WindowData {
-    /// Name, unique in the ensemble.
-    pub name: String,
-    /// Reduced bias (kT).
-    pub bias: Bias,
-    /// Statistical weight ω of one sample, positive.
-    pub weight: f64,
-    /// One or more independent runs, all condensed on the same cells.
-    pub replicas: Vec<CondensedReplica>,
-}
 
 impl Ensemble {
     /// Lays the windows on shared points.

@@ -10,10 +10,11 @@ mod error;
 mod points;
 mod restrict;
 mod shared_points;
+mod window_data;
 
-pub use assemble::WindowData;
 pub use error::EnsembleError;
 pub use points::Points;
+pub use window_data::WindowData;
 
 use crate::condense::{BinGrid, Group};
 use crate::series::BatchRule;

@@ -1,7 +1,7 @@
 //! The points that the runs of all windows have in common.
 
-use super::assemble::WindowData;
 use super::error::EnsembleError;
+use super::window_data::WindowData;
 use crate::condense::{BinGrid, CellKey, CellLattice, Cells, CondensedReplica, LatticeCell};
 use std::collections::BTreeMap;
 

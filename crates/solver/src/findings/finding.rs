@@ -100,6 +100,17 @@ pub struct FindingRecord {
     pub advice: &'static str,
 }
 
+/// A number of things, in words that fit it.
+fn counted(n: u64, thing: &str) -> String {
+    if n == 1 { format!("1 {thing}") } else { format!("{n} {thing}s") }
+}
+
+/// A position with six significant digits and no trailing zeros.
+fn short(position: f64) -> String {
+    let rounded: f64 = format!("{position:.5e}").parse().unwrap_or(position);
+    format!("{rounded}")
+}
+
 impl Finding {
     /// Stable code, the same in every version.
     #[must_use]
@@ -170,9 +181,8 @@ impl Finding {
                 format!("{file}:{line}: the last line has no line end and was left out")
             }
             Self::RepeatedFrames { file, line, frames, .. } => {
-                format!(
-                    "{file}:{line}: {frames} frames had been written before and were left out; the first copies were kept"
-                )
+                let frames = counted(*frames, "frame");
+                format!("{file}:{line}: {frames} written before and left out here; the first copies were kept")
             }
             Self::FewEffectiveSamples { window, effective_samples } => {
                 format!("window `{window}` holds only some {effective_samples:.0} independent samples")
@@ -182,7 +192,7 @@ impl Finding {
             }
             Self::NotLinked { below, above, range } => {
                 let where_to = match range {
-                    Some((from, to)) => format!("the axis is not covered between {from:.6} and {to:.6}"),
+                    Some((from, to)) => format!("the axis is not covered between {} and {}", short(*from), short(*to)),
                     None => "they overlap by less than one independent sample".to_owned(),
                 };
                 format!("no samples link window `{below}` with window `{above}`; {where_to}")
@@ -191,7 +201,7 @@ impl Finding {
                 format!("windows `{a}` and `{b}` hang together by {linking_samples:.1} effective samples")
             }
             Self::UnsampledBins { from, to, bins } => {
-                format!("no sample lies between {from:.6} and {to:.6} ({bins} bins)")
+                format!("no sample lies between {} and {} ({})", short(*from), short(*to), counted(*bins as u64, "bin"))
             }
             Self::ErrorNotDetermined { bins, of } => {
                 format!("{bins} of {of} bins have a free energy but no error that the data support")
@@ -218,7 +228,9 @@ impl Finding {
             }
             Self::ThinLink { .. } => "add a window between the two, or run both longer",
             Self::UnsampledBins { .. } => "add a window there, or narrow the range of the profile",
-            Self::ErrorNotDetermined { .. } => "run the windows named in other findings longer, or widen the bins",
+            Self::ErrorNotDetermined { .. } => {
+                "run the windows that reach there longer, widen the bins, or narrow the range of the profile"
+            }
         }
     }
 

@@ -2,9 +2,13 @@
 
 use super::certify::{largest, newton_step};
 use super::likelihood::Likelihood;
-use super::method::{Minimized, Minimizer, Progress, SolveOptions, Stopped};
+use super::method::{Progress, SolveOptions};
+use super::minimizer::{Minimized, Minimizer, Stopped};
 use crate::ensemble::Ensemble;
 use std::ops::ControlFlow;
+
+/// A wish to stop is heard this often.
+const STEPS_BETWEEN_REPORTS: u64 = 64;
 
 /// fₖ ← −ln Σ_c m(c) exp(−bₖ(c))/D(c) for all windows at once, until the Newton step is below the tolerance.
 ///
@@ -34,6 +38,9 @@ impl Minimizer for SelfConsistent {
             let gauge_value = delta[gauge];
             for d in &mut delta {
                 *d -= gauge_value;
+            }
+            if iteration % STEPS_BETWEEN_REPORTS == 0 && progress(iteration, None) == ControlFlow::Break(()) {
+                return Err(Stopped);
             }
             if iteration == next_look {
                 let distance = newton_step(&likelihood, &delta, gauge).map(|(step, _)| largest(&step));

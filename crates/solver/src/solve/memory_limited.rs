@@ -1,7 +1,8 @@
 //! Limited-memory quasi-Newton minimization (Liu & Nocedal 1989) with the line search of Moré & Thuente (1994).
 
 use super::certify::factorized;
-use super::method::{Minimized, Minimizer, Progress, SolveOptions, Stopped};
+use super::method::{Progress, SolveOptions};
+use super::minimizer::{Minimized, Minimizer, Stopped};
 use super::objective::Objective;
 use super::restarts::{Round, in_rounds};
 use crate::ensemble::Ensemble;

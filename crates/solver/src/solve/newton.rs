@@ -2,7 +2,8 @@
 
 use super::certify::{largest, newton_step};
 use super::likelihood::Likelihood;
-use super::method::{Minimized, Minimizer, Progress, SolveOptions, Stopped};
+use super::method::{Progress, SolveOptions};
+use super::minimizer::{Minimized, Minimizer, Stopped};
 use crate::ensemble::Ensemble;
 use std::ops::ControlFlow;
 

@@ -2,7 +2,8 @@
 
 use super::certify::{largest, newton_step};
 use super::likelihood::Likelihood;
-use super::method::{Minimized, Progress, SolveOptions, Stopped};
+use super::method::{Progress, SolveOptions};
+use super::minimizer::{Minimized, Stopped};
 use super::newton::damp;
 use crate::ensemble::Ensemble;
 use std::ops::ControlFlow;

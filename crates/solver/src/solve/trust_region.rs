@@ -1,6 +1,7 @@
 //! Trust-region minimization with truncated conjugate gradients (Steihaug 1983), Hessian by products only.
 
-use super::method::{Minimized, Minimizer, Progress, SolveOptions, Stopped};
+use super::method::{Progress, SolveOptions};
+use super::minimizer::{Minimized, Minimizer, Stopped};
 use super::objective::Objective;
 use super::restarts::{Round, in_rounds};
 use crate::ensemble::Ensemble;

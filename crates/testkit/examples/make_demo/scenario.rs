@@ -46,14 +46,9 @@ fn system() -> Result<OneDimensionalSystem, SystemError> {
         .map(|window| {
             let (center, force_constant) = restraint(window);
             Window {
-                restraint: Restraint::Harmonic {
-                    center,
-                    force_constant: force_constant / THERMAL_ENERGY,
-                },
+                restraint: Restraint::Harmonic { center, force_constant: force_constant / THERMAL_ENERGY },
                 n_samples: FRAMES,
-                correlation: Correlation::Exponential {
-                    time: correlation_time(center),
-                },
+                correlation: Correlation::Exponential { time: correlation_time(center) },
             }
         })
         .collect();
@@ -73,23 +68,11 @@ pub fn files() -> Result<Vec<(String, String)>, SystemError> {
         let (center, force_constant) = restraint(number);
         let name = format!("z{number:02}");
         let runs = [&first_runs[index], &second_runs[index]];
-        let starts = starts(
-            index,
-            &name,
-            runs.map(|positions| Run {
-                positions,
-                center,
-                force_constant,
-            }),
-        );
+        let starts = starts(index, &name, runs.map(|positions| Run { positions, center, force_constant }));
         for (start, parts) in (1..).zip(starts) {
             let names: Vec<&str> = parts.iter().map(|(name, _)| name.as_str()).collect();
             // Writing into a String cannot fail.
-            let _ = writeln!(
-                table,
-                "{name},{start},{},{center:.1},{force_constant:.0}",
-                names.join(";")
-            );
+            let _ = writeln!(table, "{name},{start},{},{center:.1},{force_constant:.0}", names.join(";"));
             files.extend(parts);
         }
     }
@@ -130,12 +113,8 @@ impl Run<'_> {
              # time_ps z_nm bias_kJ_per_mol\n",
             self.center, self.force_constant
         );
-        for (time, z) in (0..)
-            .step_by(INTERVAL as usize)
-            .skip(1)
-            .zip(self.positions)
-            .skip(first - 1)
-            .take(last + 1 - first)
+        for (time, z) in
+            (0..).step_by(INTERVAL as usize).skip(1).zip(self.positions).skip(first - 1).take(last + 1 - first)
         {
             let bias = 0.5 * self.force_constant * (z - self.center).powi(2);
             let _ = writeln!(text, "{time:>6} {z:>8.4} {bias:>7.3}");

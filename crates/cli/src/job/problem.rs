@@ -1,0 +1,136 @@
+//! Everything that is wrong with a job, found first and shown together.
+
+use std::fmt;
+
+use super::mark::{Mark, Source, SourceId};
+use super::render;
+
+/// One thing that is wrong: what was expected and found, where, and what to do about it.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) struct Problem {
+    /// One line: lower case, no final period, the field in backticks.
+    pub title: String,
+    /// The places concerned; the first is the place at fault.
+    pub labels: Vec<Label>,
+    /// What to do, one sentence each.
+    pub help: Vec<String>,
+}
+
+/// A place with a remark.
+#[derive(Debug, Clone, PartialEq)]
+pub(super) struct Label {
+    /// The place.
+    pub mark: Mark,
+    /// The remark; may be empty.
+    pub text: String,
+}
+
+impl Problem {
+    /// A problem without a place, such as a job file that is missing.
+    pub fn new(title: impl Into<String>) -> Self {
+        Self { title: title.into(), labels: Vec::new(), help: Vec::new() }
+    }
+
+    /// A problem at a place.
+    pub fn at(mark: Mark, title: impl Into<String>) -> Self {
+        Self::new(title).label(mark, "")
+    }
+
+    /// Adds a remark to the place at fault.
+    pub fn note(mut self, text: impl Into<String>) -> Self {
+        if let Some(first) = self.labels.first_mut() {
+            first.text = text.into();
+        }
+        self
+    }
+
+    /// Adds another place.
+    pub fn label(mut self, mark: Mark, text: impl Into<String>) -> Self {
+        self.labels.push(Label { mark, text: text.into() });
+        self
+    }
+
+    /// Adds advice.
+    pub fn help(mut self, text: impl Into<String>) -> Self {
+        self.help.push(text.into());
+        self
+    }
+
+    /// Adds `did you mean` advice where there is a near name.
+    pub fn suggest(self, nearest: Option<&str>) -> Self {
+        match nearest {
+            Some(name) => self.help(format!("did you mean `{name}`?")),
+            None => self,
+        }
+    }
+}
+
+/// The problems found so far, and the texts that they point into.
+#[derive(Debug, Default)]
+pub(super) struct Problems {
+    sources: Vec<Source>,
+    found: Vec<Problem>,
+}
+
+impl Problems {
+    /// Takes a text in, so that problems can point into it.
+    pub fn add_source(&mut self, source: Source) -> SourceId {
+        self.sources.push(source);
+        SourceId(self.sources.len() - 1)
+    }
+
+    /// Takes a problem in, unless the same was found before: a bias that many windows share is then reported once.
+    pub fn push(&mut self, problem: Problem) {
+        if !self.found.contains(&problem) {
+            self.found.push(problem);
+        }
+    }
+
+    /// Whether nothing is wrong so far.
+    pub fn is_empty(&self) -> bool {
+        self.found.is_empty()
+    }
+
+    /// The finished report, in the order of the texts.
+    pub fn into_report(self, job_name: String) -> JobProblems {
+        let Self { sources, mut found } = self;
+        found.sort_by_key(|problem| problem.labels.first().map(|label| label.mark));
+        JobProblems { job_name, sources, found }
+    }
+}
+
+/// Everything that is wrong with a job. `Display` gives all of it as plain text, each problem with its place, an excerpt and advice,
+/// and a last line with the count.
+#[derive(Debug)]
+pub struct JobProblems {
+    job_name: String,
+    sources: Vec<Source>,
+    found: Vec<Problem>,
+}
+
+impl JobProblems {
+    /// How many problems there are; at least one.
+    #[must_use]
+    pub fn count(&self) -> usize {
+        self.found.len()
+    }
+
+    /// The headline of each problem, in the order of the report.
+    pub fn titles(&self) -> impl Iterator<Item = &str> {
+        self.found.iter().map(|problem| problem.title.as_str())
+    }
+}
+
+impl fmt::Display for JobProblems {
+    fn fmt(&self, formatter: &mut fmt::Formatter<'_>) -> fmt::Result {
+        for problem in &self.found {
+            writeln!(formatter, "{}\n", render::problem(problem, &self.sources))?;
+        }
+        match self.found.len() {
+            1 => write!(formatter, "1 problem in {}", self.job_name),
+            count => write!(formatter, "{count} problems in {}", self.job_name),
+        }
+    }
+}
+
+impl std::error::Error for JobProblems {}
