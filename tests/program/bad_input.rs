@@ -91,7 +91,7 @@ fn windows_line_ends_a_byte_order_mark_and_fortran_exponents_change_nothing() {
 #[test]
 fn a_window_that_never_moves_is_named_and_no_bin_gets_an_error() {
     let workspace = Workspace::new();
-    let frozen: String = (0..600).map(|i| format!("{i}.0 0.25\n")).collect();
+    let frozen = (0..600).map(|i| format!("{i}.0 0.25")).collect::<Vec<_>>().join("\n") + "\n";
     workspace.write("low.txt", &frozen);
     let output = workspace.solve();
     assert_eq!(code(&output), 0, "{}", stderr(&output));

@@ -78,6 +78,8 @@ fn gaps_give_one_profile_a_group_where_the_job_allows_them() {
     workspace.write("high.txt", &series(2.45, 600));
     workspace.change_job("center = 0.45", "center = 2.45");
     workspace.change_job("[output]", "[solver]\nallow_gaps = true\n\n[output]");
+    // A zero that only the first group covers; the second falls back on its lowest bin.
+    workspace.change_job("bin_width = 0.05", "bin_width = 0.05\nfrom = -0.5\nto = 3.0\nzero = { position = 0.22 }");
     let output = workspace.solve();
     assert_eq!(code(&output), 0, "{}", stderr(&output));
     assert!(stdout(&output).contains("not-linked"), "{}", stdout(&output));
@@ -85,6 +87,7 @@ fn gaps_give_one_profile_a_group_where_the_job_allows_them() {
     for group in ["1", "2"] {
         assert_eq!(profile.iter().filter(|row| row["group"] == group && row["status"] == "zero").count(), 1);
     }
+    assert!(workspace.read("result/pmf.csv").contains("the bin at x = 0.225 nm; the lowest bin, x = "));
     // No bin between the two.
     let center = |row: &std::collections::HashMap<String, String>| row["position"].parse::<f64>().unwrap();
     assert!(profile.iter().all(|row| center(row) < 0.6 || center(row) > 2.0));

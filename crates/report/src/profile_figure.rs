@@ -147,7 +147,11 @@ impl ProfileFigure {
         let y = TOP - 18.0;
         drawing.path("band", &[(LEFT, y - 12.0), (LEFT + 28.0, y - 12.0), (LEFT + 28.0, y), (LEFT, y)], true);
         drawing.path("curve", &[(LEFT, y - 6.0), (LEFT + 28.0, y - 6.0)], false);
-        drawing.text("note", (LEFT + 36.0, y - 2.0), "free energy and 95 % interval of its difference from the zero");
+        let curve = match self.curves.len() {
+            0 | 1 => "free energy and 95 % interval of its difference from the zero",
+            _ => "free energy and 95 % interval, each group with a zero of its own",
+        };
+        drawing.text("note", (LEFT + 36.0, y - 2.0), curve);
         let bare = self.curves.iter().flat_map(|curve| &curve.points).any(|point| point.half_width.is_none());
         if bare {
             drawing.circle("bare", (LEFT + 412.0, y - 6.0), 3.0, "no error");

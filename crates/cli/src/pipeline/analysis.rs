@@ -9,7 +9,7 @@ use crate::progress::Progress;
 use spandrel_solver::ensemble::{Ensemble, EnsembleError, WindowData};
 use spandrel_solver::findings::{Finding, look_at_ensemble, look_at_links, look_at_profile};
 use spandrel_solver::influence::{Influence, Uncertainty};
-use spandrel_solver::profile::{Profile, ProfileError};
+use spandrel_solver::profile::{Profile, ProfileError, ProfileRequest, Zero};
 use spandrel_solver::quantities::free_energy_of_window;
 use spandrel_solver::solve::{Links, Solution, SolveError, solve};
 use std::ops::ControlFlow;
@@ -92,7 +92,7 @@ pub fn solve_parts(
     let progress = Progress::open(messages, "solving");
     if analysis.links.groups.len() == 1 {
         let ensemble = &analysis.ensemble;
-        let part = solve_part(job, ensemble, &analysis.links, &progress, interrupt)?;
+        let part = solve_part(job, &job.profile.request, ensemble, &analysis.links, &progress, interrupt)?;
         analysis.findings.extend(look_at_profile(&part.profile));
         return Ok(vec![part]);
     }
@@ -102,7 +102,17 @@ pub fn solve_parts(
     let mut parts = Vec::new();
     for group in &analysis.links.groups {
         let ensemble = analysis.ensemble.restricted_to(group);
-        let mut part = solve_part(job, &ensemble, &analysis.links.within(group), &progress, interrupt)?;
+        let links = analysis.links.within(group);
+        let solve = |request| solve_part(job, &request, &ensemble, &links, &progress, interrupt);
+        // A zero on ground that only another group covers gives way to the group's own lowest bin.
+        let outcome = match solve(job.profile.request) {
+            Err(AnalysisError::Profile(ProfileError::ZeroNotSampled { .. })) => {
+                solve(ProfileRequest { zero: Zero::Minimum, ..job.profile.request })
+            }
+            outcome => outcome,
+        };
+        let mut part = outcome?;
+        part.profile = part.profile.trimmed();
         part.windows.clone_from(group);
         analysis.findings.extend(look_at_profile(&part.profile));
         parts.push(part);
@@ -112,6 +122,7 @@ pub fn solve_parts(
 
 fn solve_part(
     job: &Job,
+    request: &ProfileRequest,
     ensemble: &Ensemble,
     links: &Links,
     progress: &Progress,
@@ -126,7 +137,7 @@ fn solve_part(
     };
     let solution = solve(ensemble, links, &job.solver.options, &mut report).map_err(AnalysisError::Solve)?;
     let influence = Influence::of(ensemble, &solution).ok_or(AnalysisError::NoCurvature)?;
-    let profile = Profile::draw(ensemble, &influence, &job.profile.request).map_err(AnalysisError::Profile)?;
+    let profile = Profile::draw(ensemble, &influence, request).map_err(AnalysisError::Profile)?;
     let window_results = (0..ensemble.n_windows())
         .map(|k| {
             let quantity = free_energy_of_window(&solution.free_energies, k);

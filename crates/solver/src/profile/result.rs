@@ -126,6 +126,17 @@ impl Profile {
         Ok(profile)
     }
 
+    /// The profile without unsampled bins at its ends.
+    #[must_use]
+    pub fn trimmed(mut self) -> Self {
+        let sampled = |bin: &ProfileBin| bin.status != BinStatus::Unsampled;
+        let first = self.bins.iter().position(sampled).unwrap_or(0);
+        let end = self.bins.iter().rposition(sampled).map_or(0, |last| last + 1);
+        self.bins = self.bins[first..end.max(first)].to_vec();
+        self.deviations = self.deviations[first..end.max(first)].to_vec();
+        self
+    }
+
     /// Numbers of the bins that have an error, and the covariance matrix of their free energies in kT².
     #[must_use]
     pub fn covariance(&self, influence: &Influence) -> (Vec<usize>, DMatrix<f64>) {
