@@ -3,6 +3,7 @@
 
 mod bad_input;
 mod demo;
+mod errors;
 mod examples;
 mod exit_codes;
 mod output_folder;

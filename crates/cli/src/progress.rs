@@ -24,6 +24,13 @@ impl Progress {
         Self::new(messages, what, Some(total), style.ok())
     }
 
+    /// Work of `total` like steps, described by `what`.
+    #[must_use]
+    pub fn counted(messages: Messages, what: &'static str, total: u64) -> Self {
+        let style = ProgressStyle::with_template("{msg} {bar:30} {pos}/{len} {per_sec} {eta} left");
+        Self::new(messages, what, Some(total), style.ok())
+    }
+
     /// Work whose length is not known beforehand; each step can say where it stands.
     #[must_use]
     pub fn open(messages: Messages, what: &'static str) -> Self {
@@ -42,6 +49,12 @@ impl Progress {
     /// So much more is done.
     pub fn advance(&self, steps: u64) {
         self.bar.inc(steps);
+        self.show_if_it_lasts();
+    }
+
+    /// So much is done in all.
+    pub fn reach(&self, step: u64) {
+        self.bar.set_position(step);
         self.show_if_it_lasts();
     }
 

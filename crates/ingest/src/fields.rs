@@ -38,22 +38,24 @@ pub(crate) fn read_row<'l>(
 
 /// The texts of all fields, without blanks and quotes around them.
 pub(crate) fn texts(line: &[u8], separator: Separator) -> Vec<&[u8]> {
-    let mut fields = Vec::new();
     match separator.byte() {
-        None => fields.extend(line.split(|&byte| is_blank(byte)).filter(|field| !field.is_empty())),
-        Some(byte) => {
-            let mut at = 0;
-            loop {
-                let field = delimited_field(line, at, byte);
-                fields.push(field.text);
-                if field.end == line.len() {
-                    break;
-                }
-                at = field.end + 1;
-            }
-        }
+        None => line.split(|&byte| is_blank(byte)).filter(|field| !field.is_empty()).collect(),
+        Some(byte) => delimited_texts(line, byte),
     }
-    fields
+}
+
+/// The texts of all fields between single bytes of a kind.
+pub(crate) fn delimited_texts(line: &[u8], delimiter: u8) -> Vec<&[u8]> {
+    let mut fields = Vec::new();
+    let mut at = 0;
+    loop {
+        let field = delimited_field(line, at, delimiter);
+        fields.push(field.text);
+        if field.end == line.len() {
+            return fields;
+        }
+        at = field.end + 1;
+    }
 }
 
 pub(crate) const fn is_blank(byte: u8) -> bool {

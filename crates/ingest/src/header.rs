@@ -5,7 +5,7 @@ use std::path::Path;
 
 use crate::error::{IngestError, Place};
 use crate::fields::texts;
-use crate::layout::{Column, Separator};
+use crate::layout::Separator;
 
 /// Names are near when at most this part of their characters differs.
 const NEAR: f64 = 0.6;
@@ -16,8 +16,8 @@ const OFFERED: usize = 3;
 /// The lines before the first row that may hold the column names.
 #[derive(Default)]
 pub(crate) struct Headers {
-    /// The header line proper, which is not a comment.
-    line: Option<Header>,
+    /// A first line of names that is not a comment. Whether it is a header is only known at the first row.
+    line: Option<NameLine>,
     /// The last comment line for each number of fields; which number counts is only known at the first row.
     comments: BTreeMap<usize, Header>,
 }
@@ -27,13 +27,45 @@ struct Header {
     names: Vec<String>,
 }
 
-impl Headers {
-    pub(crate) const fn has_line(&self) -> bool {
-        self.line.is_some()
+/// A line of names that is not a comment.
+pub(crate) struct NameLine {
+    header: Header,
+    /// The line itself, for a fault.
+    pub(crate) text: Vec<u8>,
+    /// Whether a comment before it has as many names.
+    pub(crate) follows_comment: bool,
+}
+
+impl NameLine {
+    /// Its number in the file.
+    pub(crate) const fn number(&self) -> u64 {
+        self.header.line
     }
 
-    pub(crate) fn set_line(&mut self, number: u64, fields: &[&[u8]]) {
-        self.line = Some(Header::new(number, fields));
+    /// Whether it is the header of rows with this many fields.
+    pub(crate) fn fits(&self, fields: usize) -> bool {
+        self.header.names.len() == fields && !self.follows_comment
+    }
+}
+
+impl Headers {
+    /// The line of names that is not a comment.
+    pub(crate) const fn line(&self) -> Option<&NameLine> {
+        self.line.as_ref()
+    }
+
+    /// Whether a comment has this many names.
+    pub(crate) fn has_comment(&self, fields: usize) -> bool {
+        self.comments.contains_key(&fields)
+    }
+
+    /// Keeps a line of names that is not a comment.
+    pub(crate) fn set_line(&mut self, number: u64, text: &[u8], fields: &[&[u8]]) {
+        self.line = Some(NameLine {
+            header: Header::new(number, fields),
+            text: text.to_vec(),
+            follows_comment: self.has_comment(fields.len()),
+        });
     }
 
     /// Keeps a comment, given without its prefix.
@@ -44,30 +76,18 @@ impl Headers {
         }
     }
 
-    /// The column's place in the rows, counted from 0. `row` is the line of the first row, `fields` the number of its fields.
-    pub(crate) fn resolve(&self, column: &Column, path: &Path, row: u64, fields: usize) -> Result<usize, IngestError> {
-        let name = match column {
-            Column::Number(number) if number.get() <= fields => return Ok(number.get() - 1),
-            Column::Number(number) => {
-                return Err(IngestError::MissingColumn {
-                    place: Box::new(Place::line(path, row)),
-                    column: number.get(),
-                    fields,
-                });
-            }
-            Column::Name(name) => name.trim(),
-        };
-        let fitting = match &self.line {
-            Some(header) => Some(header).filter(|header| header.names.len() == fields),
-            None => self.comments.get(&fields),
-        };
+    /// The place in the rows, counted from 0, of the column of this name. `row` is the line of the first row, `fields` the number
+    /// of its fields.
+    pub(crate) fn resolve(&self, name: &str, path: &Path, row: u64, fields: usize) -> Result<usize, IngestError> {
+        let line = self.line.as_ref().map(|line| &line.header);
+        let fitting = line.filter(|header| header.names.len() == fields).or_else(|| self.comments.get(&fields));
         let Some(header) = fitting else {
             let last_comment = self.comments.values().max_by_key(|header| header.line);
             return Err(IngestError::NoHeader {
                 place: Box::new(Place::line(path, row)),
                 name: name.to_owned(),
                 fields,
-                candidate: self.line.as_ref().or(last_comment).map(|header| (header.line, header.names.len())),
+                candidate: line.or(last_comment).map(|header| (header.line, header.names.len())),
             });
         };
         header.find(name, path)

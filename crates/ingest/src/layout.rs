@@ -6,6 +6,7 @@ use std::num::NonZeroUsize;
 use serde::Serialize;
 
 use crate::error::IngestError;
+use crate::readable_number::readable_number;
 
 /// What stands between two columns.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash, Default, Serialize)]
@@ -49,8 +50,9 @@ pub enum Column {
     Number(NonZeroUsize),
     /// By its name in the file's header, matched exactly.
     ///
-    /// The header is the first line that is neither blank nor a comment, when none of its fields is a number;
-    /// without one, it is the last comment line before the first row that has, behind its comment prefix, as many fields as the row.
+    /// The header is the last comment line before the first row that has, behind its comment prefix, as many fields as the row.
+    /// It may also be the first line that is not a comment, if no comment before it is a header: it then has as many fields as the
+    /// row, none of them a number and each beginning with a letter or an underscore. Any other line of text is refused.
     Name(String),
 }
 
@@ -138,7 +140,7 @@ impl Layout {
             TimeSource::Interval(interval) if !(interval > 0.0 && interval.is_finite()) => Err(IngestError::Setting {
                 setting: "interval",
                 expected: "a finite number above 0",
-                found: interval.to_string(),
+                found: readable_number(interval),
             }),
             _ => Ok(()),
         }

@@ -6,7 +6,7 @@
 //! source   a file's bytes, digested as they come from the disk, decompressed
 //! lines    lines, found in large pieces
 //! fields   the fields of a line; number: a field as a number
-//! rows     rows of wanted numbers; header: where named columns stand
+//! rows     rows of wanted numbers; header: where named columns stand; clue: why a line cannot be read
 //! join     the segments of a run as one series of frames; timeline: frames written twice
 //! picker   the frames that are kept, in chunks
 //! ```
@@ -16,9 +16,11 @@
 //! or read with a [`Notice`] of what was left out.
 
 mod chunk;
+mod clue;
 mod error;
 mod excerpt;
 mod fields;
+mod first_line;
 mod header;
 mod interval;
 mod join;
@@ -27,6 +29,7 @@ mod lines;
 mod notice;
 mod number;
 mod picker;
+mod readable_number;
 mod readable_path;
 mod report;
 mod rows;
@@ -37,7 +40,7 @@ mod table;
 mod timeline;
 
 pub use chunk::Chunk;
-pub use error::{IngestError, NumberProblem, Place, ReadError, TextProblem};
+pub use error::{Clue, IngestError, NumberProblem, Place, ReadError, TextProblem};
 pub use layout::{Column, Layout, Separator, TimeSource};
 pub use notice::Notice;
 pub use report::{SegmentReport, SeriesReport};

@@ -177,12 +177,14 @@ impl<'p> Lines<'p> {
 
     fn too_long(&self, line_end: usize) -> IngestError {
         let seen = line_end.min(self.start + LONGEST_LINE);
-        match self.refuse_zero_byte(seen) {
-            Err(error) => error,
-            Ok(()) => IngestError::LineTooLong {
-                place: Box::new(Place::line(self.path, self.count + 1)),
-                limit: LONGEST_LINE,
-            },
+        if let Err(error) = self.refuse_zero_byte(seen) {
+            return error;
+        }
+        let number = self.count + 1;
+        let line = Line { number, text: &self.buffer[self.start..seen], is_complete: false, is_sound: false };
+        match refuse_lone_returns(self.path, line) {
+            Err(place) => IngestError::lone_returns(place),
+            Ok(()) => IngestError::LineTooLong { place: Box::new(Place::line(self.path, number)), limit: LONGEST_LINE },
         }
     }
 
@@ -195,6 +197,15 @@ impl<'p> Lines<'p> {
             }),
             None => Ok(()),
         }
+    }
+}
+
+/// Gives the place of the first carriage return inside a line, where it ends a line of a system that writes no line feeds.
+#[inline]
+pub(crate) fn refuse_lone_returns(path: &Path, line: Line<'_>) -> Result<(), Place> {
+    match memchr::memchr(b'\r', line.text) {
+        Some(offset) => Err(Place::byte(path, line.number, line.text, offset)),
+        None => Ok(()),
     }
 }
 

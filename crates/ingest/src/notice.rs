@@ -5,6 +5,7 @@ use std::path::PathBuf;
 
 use serde::Serialize;
 
+use crate::readable_number::readable_number;
 use crate::readable_path::readable_path;
 
 /// Something that was left out of a series and that its owner should know of.
@@ -69,8 +70,10 @@ impl fmt::Display for Notice {
             }
             Self::RepeatedFrames { path, first_line, count, first_time, last_time } => write!(
                 formatter,
-                "{}:{first_line}: {count} rows from time {first_time} to {last_time} repeat earlier frames and were left out",
-                path.display()
+                "{}:{first_line}: {count} rows from time {} to {} repeat earlier frames and were left out",
+                path.display(),
+                readable_number(*first_time),
+                readable_number(*last_time)
             ),
             Self::MoreRepeatedFrames { stretches, count } => write!(
                 formatter,

@@ -2,23 +2,24 @@
 
 use std::path::Path;
 
+use crate::clue::{self, are_names};
 use crate::error::{IngestError, Place};
 use crate::excerpt::excerpt;
-use crate::fields::{Wanted, is_blank, read_row, texts};
+use crate::fields::{BadField, Wanted, is_blank, read_row, texts};
+use crate::first_line::{is_text, no_header, text_line};
 use crate::header::Headers;
 use crate::layout::{Column, Separator};
-use crate::lines::{Line, Lines};
-use crate::number::is_meant_as_number;
+use crate::lines::{Line, Lines, refuse_lone_returns};
 
 /// What is wanted from a file, ready for reading.
 #[derive(Clone)]
 pub(crate) struct RowLayout<'l> {
-    separator: Separator,
+    pub(crate) separator: Separator,
     /// Longest first.
     prefixes: Vec<&'l [u8]>,
     /// Whether a prefix begins with this byte: for nearly every row one look settles that it is no comment.
     begins_prefix: [bool; 256],
-    columns: Vec<&'l Column>,
+    pub(crate) columns: Vec<&'l Column>,
 }
 
 impl<'l> RowLayout<'l> {
@@ -52,8 +53,15 @@ impl<'l> RowLayout<'l> {
         Content::Data(text)
     }
 
-    fn has_names(&self) -> bool {
-        self.columns.iter().any(|column| matches!(column, Column::Name(_)))
+    /// The wanted fields, counted from 0 and in ascending order; none unless all are given by number.
+    pub(crate) fn numbered_fields(&self) -> Vec<usize> {
+        let number = |column: &&Column| match column {
+            Column::Number(number) => Some(number.get() - 1),
+            Column::Name(_) => None,
+        };
+        let mut fields: Vec<usize> = self.columns.iter().map(number).collect::<Option<_>>().unwrap_or_default();
+        fields.sort_unstable();
+        fields
     }
 }
 
@@ -68,7 +76,8 @@ pub(crate) struct Rows<'l> {
     lines: Lines<'l>,
     layout: &'l RowLayout<'l>,
     headers: Headers,
-    wants_header: bool,
+    /// Where a comment before the first row holds a carriage return: it may hold the rows as well.
+    lone_return: Option<Place>,
     shape: Option<Shape>,
     unfinished: Option<Unfinished>,
     count: u64,
@@ -98,7 +107,7 @@ impl<'l> Rows<'l> {
             lines: Lines::open(path, digest, chunk)?,
             layout,
             headers: Headers::default(),
-            wants_header: layout.has_names(),
+            lone_return: None,
             shape: None,
             unfinished: None,
             count: 0,
@@ -117,14 +126,19 @@ impl<'l> Rows<'l> {
             let text = match self.layout.content(line.text) {
                 Content::Nothing => continue,
                 Content::Comment(text) => {
-                    if line.is_complete && self.wants_header && self.shape.is_none() {
-                        self.headers.add_comment(line.number, text, separator);
+                    if self.shape.is_none() {
+                        if let Err(place) = refuse_lone_returns(path, line) {
+                            self.lone_return = Some(place);
+                        } else if line.is_complete {
+                            self.headers.add_comment(line.number, text, separator);
+                        }
                     }
                     continue;
                 }
                 Content::Data(text) => text,
             };
             if !line.is_complete {
+                refuse_lone_returns(path, line).map_err(IngestError::lone_returns)?;
                 self.unfinished = Some(Unfinished { line: line.number, text: excerpt(text) });
                 break;
             }
@@ -132,13 +146,22 @@ impl<'l> Rows<'l> {
             let shape = match &mut self.shape {
                 Some(shape) => shape,
                 empty => {
+                    refuse_lone_returns(path, line).map_err(IngestError::lone_returns)?;
                     let fields = texts(line.text, separator);
-                    if !self.headers.has_line() && is_header(&fields) {
-                        self.headers.set_line(line.number, &fields);
-                        continue;
+                    match self.headers.line() {
+                        None if is_text(&fields) && are_names(&fields) => {
+                            self.headers.set_line(line.number, line.text, &fields);
+                            continue;
+                        }
+                        None if is_text(&fields) => {
+                            let clue = clue::of_text_line(line.text, separator, &self.layout.numbered_fields());
+                            return Err(text_line(path, line.number, line.text, self.layout, clue));
+                        }
+                        Some(names) if !names.fits(fields.len()) => {
+                            return Err(no_header(path, line, fields.len(), names, &self.headers, self.layout));
+                        }
+                        _ => empty.insert(Shape::new(self.layout, &self.headers, path, line, fields.len())?),
                     }
-                    let first = Shape::new(self.layout, &self.headers, path, line.number, fields.len())?;
-                    empty.insert(first)
                 }
             };
             shape.read(line, separator, path, values)?;
@@ -146,6 +169,9 @@ impl<'l> Rows<'l> {
             return Ok(Some(line.number));
         }
         if self.count == 0 {
+            if let Some(place) = self.lone_return.take() {
+                return Err(IngestError::lone_returns(place));
+            }
             return Err(IngestError::NoRows {
                 path: path.to_owned(),
                 lines: self.lines.count(),
@@ -191,38 +217,64 @@ impl Shape {
         layout: &RowLayout<'_>,
         headers: &Headers,
         path: &Path,
-        line: u64,
+        line: Line<'_>,
         fields: usize,
     ) -> Result<Self, IngestError> {
         let mut wanted = Vec::with_capacity(layout.columns.len());
         for (slot, column) in layout.columns.iter().enumerate() {
-            let field = headers.resolve(column, path, line, fields)?;
+            let field = match column {
+                Column::Number(number) if number.get() <= fields => number.get() - 1,
+                Column::Number(number) => {
+                    return Err(IngestError::MissingColumn {
+                        place: Box::new(Place::line(path, line.number)),
+                        column: number.get(),
+                        fields,
+                        clue: clue::of_row(line.text, layout.separator, &layout.numbered_fields()),
+                    });
+                }
+                Column::Name(name) => headers.resolve(name.trim(), path, line.number, fields)?,
+            };
             wanted.push(Wanted { field, slot });
         }
         wanted.sort_unstable();
-        Ok(Self { first_line: line, fields, wanted })
+        Ok(Self { first_line: line.number, fields, wanted })
     }
 
     #[inline]
     fn read(&self, line: Line<'_>, separator: Separator, path: &Path, values: &mut [f64]) -> Result<(), IngestError> {
         match read_row(line.text, separator, &self.wanted, values) {
             Ok(fields) if fields == self.fields => Ok(()),
-            Ok(fields) => Err(IngestError::Ragged {
+            found => Err(self.fault(line, separator, path, found)),
+        }
+    }
+
+    #[cold]
+    fn fault(
+        &self,
+        line: Line<'_>,
+        separator: Separator,
+        path: &Path,
+        found: Result<usize, BadField<'_>>,
+    ) -> IngestError {
+        if let Err(place) = refuse_lone_returns(path, line) {
+            return IngestError::lone_returns(place);
+        }
+        match found {
+            Ok(fields) => IngestError::Ragged {
                 place: Box::new(Place::line(path, line.number)),
                 expected: self.fields,
                 found: fields,
                 first_line: self.first_line,
-            }),
-            Err(bad) => Err(IngestError::BadNumber {
-                place: Box::new(Place::byte(path, line.number, line.text, bad.offset).in_column(bad.field + 1)),
-                found: excerpt(bad.text),
-                problem: bad.problem,
-            }),
+            },
+            Err(bad) => {
+                let wanted: Vec<usize> = self.wanted.iter().map(|wanted| wanted.field).collect();
+                IngestError::BadNumber {
+                    place: Box::new(Place::byte(path, line.number, line.text, bad.offset).in_column(bad.field + 1)),
+                    found: excerpt(bad.text),
+                    problem: bad.problem,
+                    clue: clue::of_row(line.text, separator, &wanted),
+                }
+            }
         }
     }
-}
-
-/// A header has some text and no field that is, or was meant as, a number.
-fn is_header(fields: &[&[u8]]) -> bool {
-    fields.iter().any(|field| !field.is_empty()) && !fields.iter().any(|field| is_meant_as_number(field))
 }

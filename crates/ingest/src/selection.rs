@@ -5,6 +5,7 @@ use std::num::NonZeroU64;
 use serde::Serialize;
 
 use crate::error::IngestError;
+use crate::readable_number::readable_number;
 
 /// What is left out at the start of a joined series.
 #[derive(Debug, Clone, Copy, PartialEq, Default, Serialize)]
@@ -54,7 +55,7 @@ impl Selection {
         if allowed {
             Ok(())
         } else {
-            Err(IngestError::Setting { setting: "discard", expected, found: found.to_string() })
+            Err(IngestError::Setting { setting: "discard", expected, found: readable_number(found) })
         }
     }
 }

@@ -1,13 +1,18 @@
 //! Round numbers along an axis.
 
-/// Values at a step of 1, 2 or 5 times a power of ten, some `wanted` of them between `low` and `high`, both ends included where they are round.
+/// Steps in degrees that divide a turn the way people do.
+const PARTS_OF_A_TURN: [f64; 6] = [15.0, 30.0, 45.0, 60.0, 90.0, 180.0];
+
+/// Values at a round step, no more than `wanted` of them between `low` and `high` and not many fewer, ends included where they are round.
 ///
-/// Empty unless `low < high` and both are finite.
-pub(crate) fn ticks(low: f64, high: f64, wanted: f64) -> Vec<f64> {
+/// Round is 1, 2 or 5 times a power of ten; in degrees, above 10, a simple part of a turn. Empty unless `low < high` and both are finite.
+pub(crate) fn ticks(low: f64, high: f64, wanted: f64, in_degrees: bool) -> Vec<f64> {
     if !(low.is_finite() && high.is_finite() && low < high) {
         return Vec::new();
     }
-    let step = round_step((high - low) / wanted);
+    let raw = (high - low) / wanted;
+    let part_of_a_turn = PARTS_OF_A_TURN.iter().copied().find(|step| *step >= raw && in_degrees && raw > 10.0);
+    let step = part_of_a_turn.unwrap_or_else(|| round_step(raw));
     let first = (low / step - 1e-9).ceil();
     let n_steps = (high / step + 1e-9).floor() - first;
     let mut values = Vec::new();
@@ -51,7 +56,7 @@ mod tests {
     use super::*;
 
     fn labels(low: f64, high: f64, wanted: f64) -> Vec<String> {
-        let values = ticks(low, high, wanted);
+        let values = ticks(low, high, wanted, false);
         values.iter().map(|&value| label(value, &values)).collect()
     }
 
@@ -63,9 +68,16 @@ mod tests {
     }
 
     #[test]
+    fn degrees_come_in_parts_of_a_turn() {
+        let values = ticks(-180.0, 180.0, 9.0, true);
+        assert_eq!(values, [-180.0, -135.0, -90.0, -45.0, 0.0, 45.0, 90.0, 135.0, 180.0]);
+        assert_eq!(ticks(0.0, 8.0, 4.0, true), ticks(0.0, 8.0, 4.0, false));
+    }
+
+    #[test]
     fn an_empty_or_endless_range_has_none() {
-        assert!(ticks(1.0, 1.0, 5.0).is_empty());
-        assert!(ticks(f64::NAN, 1.0, 5.0).is_empty());
-        assert!(ticks(0.0, f64::INFINITY, 5.0).is_empty());
+        assert!(ticks(1.0, 1.0, 5.0, false).is_empty());
+        assert!(ticks(f64::NAN, 1.0, 5.0, true).is_empty());
+        assert!(ticks(0.0, f64::INFINITY, 5.0, true).is_empty());
     }
 }

@@ -2,7 +2,7 @@
 
 use crate::axis_ticks::{label, ticks};
 use crate::svg::Drawing;
-use spandrel_solver::profile::{BinStatus, Profile};
+use spandrel_solver::profile::{BinStatus, Profile, SimultaneousBand};
 use std::ops::Range;
 
 const WIDTH: f64 = 720.0;
@@ -17,6 +17,7 @@ const STYLE: &str = "\
 .ground{fill:#fff}\
 .frame{fill:none;stroke:#5b6470;stroke-width:1}\
 .rule{fill:none;stroke:#e3e6ea;stroke-width:1}\
+.curve-band{fill:#dbe5ef;stroke:none}\
 .band{fill:#9fb8d3;stroke:none}\
 .curve{fill:none;stroke:#16324f;stroke-width:2;stroke-linejoin:round}\
 .bare{fill:#fff;stroke:#16324f;stroke-width:1.2}\
@@ -32,6 +33,8 @@ text{font-family:sans-serif;fill:#20262d}\
 pub struct ProfileFigure {
     /// Name of the axis with its unit, for example `z (nm)`.
     pub position_label: String,
+    /// Whether positions are in degrees, whose ticks divide a turn.
+    pub in_degrees: bool,
     /// Name of the energy with its unit.
     pub energy_label: String,
     /// One curve for each group of windows.
@@ -55,22 +58,25 @@ pub struct CurvePoint {
     pub energy: f64,
     /// Half width of the 95 % interval; 0 in the bin that is zero by choice, `None` where the data support none.
     pub half_width: Option<f64>,
+    /// Half width of the band that holds the whole curve; 0 and `None` as above.
+    pub band_half_width: Option<f64>,
 }
 
 impl Curve {
-    /// The sampled bins of a profile, energies multiplied by `energy_of_kt` (the unit's value of kT).
+    /// The sampled bins of a profile with its band, energies multiplied by `energy_of_kt` (the unit's value of kT).
     #[must_use]
-    pub fn of_profile(profile: &Profile, energy_of_kt: f64) -> Self {
+    pub fn of_profile(profile: &Profile, band: Option<&SimultaneousBand>, energy_of_kt: f64) -> Self {
         let points = profile.bins.iter().enumerate().filter_map(|(number, bin)| {
-            let half_width = match bin.status {
+            let around = |half_width: Option<f64>| match bin.status {
                 BinStatus::Zero => Some(0.0),
-                _ => bin.uncertainty.map(|uncertainty| uncertainty.half_width_95 * energy_of_kt),
+                _ => half_width.map(|half_width| half_width * energy_of_kt),
             };
             Some(CurvePoint {
                 bin: number,
                 position: bin.center(),
                 energy: bin.free_energy? * energy_of_kt,
-                half_width,
+                half_width: around(bin.uncertainty.map(|uncertainty| uncertainty.half_width_95)),
+                band_half_width: around(band.and_then(|band| band.half_widths.get(number).copied().flatten())),
             })
         });
         Self { points: points.collect() }
@@ -89,6 +95,13 @@ impl Curve {
     }
 }
 
+impl CurvePoint {
+    /// How far the drawing reaches above and below the point.
+    fn reach(&self) -> f64 {
+        self.band_half_width.or(self.half_width).unwrap_or(0.0)
+    }
+}
+
 /// From the figure's units to pixels.
 struct Scale {
     positions: (f64, f64),
@@ -101,8 +114,8 @@ impl Scale {
         let low = |so_far: f64, x: f64| if x < so_far { x } else { so_far };
         let high = |so_far: f64, x: f64| if x > so_far { x } else { so_far };
         let positions = points().map(|point| point.position);
-        let lower = points().map(|point| point.energy - point.half_width.unwrap_or(0.0));
-        let upper = points().map(|point| point.energy + point.half_width.unwrap_or(0.0));
+        let lower = points().map(|point| point.energy - point.reach());
+        let upper = points().map(|point| point.energy + point.reach());
         let positions = (positions.clone().fold(f64::INFINITY, low), positions.fold(f64::NEG_INFINITY, high));
         let energies = (lower.fold(f64::INFINITY, low), upper.fold(f64::NEG_INFINITY, high));
         let all = [positions.0, positions.1, energies.0, energies.1];
@@ -131,7 +144,7 @@ impl ProfileFigure {
     pub fn to_svg(&self) -> String {
         let mut drawing = Drawing::new(WIDTH, HEIGHT);
         if let Some(scale) = Scale::of(&self.curves) {
-            draw_frame(&mut drawing, &scale);
+            draw_frame(&mut drawing, &scale, self.in_degrees);
             for curve in &self.curves {
                 draw_curve(&mut drawing, &scale, curve);
             }
@@ -144,26 +157,36 @@ impl ProfileFigure {
     }
 
     fn draw_key(&self, drawing: &mut Drawing) {
-        let y = TOP - 18.0;
-        drawing.path("band", &[(LEFT, y - 12.0), (LEFT + 28.0, y - 12.0), (LEFT + 28.0, y), (LEFT, y)], true);
-        drawing.path("curve", &[(LEFT, y - 6.0), (LEFT + 28.0, y - 6.0)], false);
-        let curve = match self.curves.len() {
-            0 | 1 => "free energy and 95 % interval of its difference from the zero",
-            _ => "free energy and 95 % interval, each group with a zero of its own",
+        let y = TOP - 12.0;
+        let mut x = LEFT;
+        let mut swatch = |drawing: &mut Drawing, classes: &[&str], text: &str, width: f64| {
+            for class in classes {
+                if *class == "curve" {
+                    drawing.path(class, &[(x, y - 6.0), (x + 26.0, y - 6.0)], false);
+                } else {
+                    drawing.path(class, &[(x, y - 12.0), (x + 26.0, y - 12.0), (x + 26.0, y), (x, y)], true);
+                }
+            }
+            drawing.text("note", (x + 32.0, y - 2.0), text);
+            x += width;
         };
-        drawing.text("note", (LEFT + 36.0, y - 2.0), curve);
-        let bare = self.curves.iter().flat_map(|curve| &curve.points).any(|point| point.half_width.is_none());
-        if bare {
-            drawing.circle("bare", (LEFT + 412.0, y - 6.0), 3.0, "no error");
-            drawing.text("note", (LEFT + 422.0, y - 2.0), "the data support no error here");
+        swatch(drawing, &["band", "curve"], "free energy, 95 % interval of each bin", 262.0);
+        swatch(drawing, &["curve-band"], "95 % band of the whole curve", 212.0);
+        if self.curves.iter().flat_map(|curve| &curve.points).any(|point| point.half_width.is_none()) {
+            drawing.circle("bare", (x + 8.0, y - 6.0), 3.0, "no error");
+            drawing.text("note", (x + 18.0, y - 2.0), "no error supported");
+        }
+        if self.curves.len() > 1 {
+            let note = "each group of windows has a zero of its own";
+            drawing.text("note", (LEFT, y - 22.0), note);
         }
     }
 }
 
-fn draw_frame(drawing: &mut Drawing, scale: &Scale) {
+fn draw_frame(drawing: &mut Drawing, scale: &Scale, in_degrees: bool) {
     let (right, bottom) = (WIDTH - RIGHT, HEIGHT - BOTTOM);
-    let positions = ticks(scale.positions.0, scale.positions.1, 9.0);
-    let energies = ticks(scale.energies.0, scale.energies.1, 7.0);
+    let positions = ticks(scale.positions.0, scale.positions.1, 9.0, in_degrees);
+    let energies = ticks(scale.energies.0, scale.energies.1, 7.0, false);
     for &energy in &energies {
         let y = scale.y(energy);
         drawing.path("rule", &[(LEFT, y), (right, y)], false);
@@ -179,11 +202,15 @@ fn draw_frame(drawing: &mut Drawing, scale: &Scale) {
 
 fn draw_curve(drawing: &mut Drawing, scale: &Scale, curve: &Curve) {
     let at = |point: &CurvePoint, shift: f64| (scale.x(point.position), scale.y(point.energy + shift));
-    for stretch in curve.stretches(|point| point.half_width.is_some()) {
-        let points = &curve.points[stretch];
-        let upper = points.iter().map(|point| at(point, point.half_width.unwrap_or(0.0)));
-        let lower = points.iter().rev().map(|point| at(point, -point.half_width.unwrap_or(0.0)));
-        drawing.path("band", &upper.chain(lower).collect::<Vec<_>>(), true);
+    let half_widths: [(&str, fn(&CurvePoint) -> Option<f64>); 2] =
+        [("curve-band", |point| point.band_half_width), ("band", |point| point.half_width)];
+    for (class, half_width) in half_widths {
+        for stretch in curve.stretches(|point| half_width(point).is_some()) {
+            let points = &curve.points[stretch];
+            let upper = points.iter().map(|point| at(point, half_width(point).unwrap_or(0.0)));
+            let lower = points.iter().rev().map(|point| at(point, -half_width(point).unwrap_or(0.0)));
+            drawing.path(class, &upper.chain(lower).collect::<Vec<_>>(), true);
+        }
     }
     for stretch in curve.stretches(|_| true) {
         let points: Vec<(f64, f64)> = curve.points[stretch].iter().map(|point| at(point, 0.0)).collect();
@@ -202,12 +229,13 @@ mod tests {
     use super::*;
 
     fn point(bin: usize, energy: f64, half_width: Option<f64>) -> CurvePoint {
-        CurvePoint { bin, position: 0.1 * bin as f64, energy, half_width }
+        CurvePoint { bin, position: 0.1 * bin as f64, energy, half_width, band_half_width: half_width }
     }
 
     fn figure(points: Vec<CurvePoint>) -> String {
         ProfileFigure {
             position_label: "z (nm)".into(),
+            in_degrees: false,
             energy_label: "F (kJ/mol) & more".into(),
             curves: vec![Curve { points }],
         }

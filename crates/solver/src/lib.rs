@@ -12,10 +12,12 @@
 //! - [`influence`]: the one door for errors of any quantity;
 //! - [`quantities`]: numbers drawn from a solution;
 //! - [`profile`]: the potential of mean force on output bins;
+//! - [`bootstrap`]: the errors once more by other ways, as a check;
 //! - [`findings`]: what all of this says about the data, as data.
 //!
 //! Energies are in kT and positions in the user's unit throughout. Nothing here reads a file, prints, or looks at a clock.
 
+pub mod bootstrap;
 pub mod condense;
 pub mod ensemble;
 pub mod findings;

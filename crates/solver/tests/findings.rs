@@ -7,7 +7,10 @@ use common::{CellChoice, assemble, axis, bias, sampled, solved};
 use spandrel_bias::Bias;
 use spandrel_solver::condense::BinGrid;
 use spandrel_solver::ensemble::Ensemble;
-use spandrel_solver::findings::{Finding, Severity, look_at_ensemble, look_at_links, look_at_profile};
+use spandrel_solver::bootstrap::{BetweenReplicas, ReplicaError};
+use spandrel_solver::findings::{
+    Finding, Severity, look_at_ensemble, look_at_links, look_at_profile, look_at_replicas,
+};
 use spandrel_solver::influence::Influence;
 use spandrel_solver::profile::{Profile, ProfileRequest, Zero};
 use spandrel_solver::solve::{Link, Links, SolveOptions};
@@ -51,7 +54,7 @@ fn a_link_is_thin_just_below_twenty_samples() {
     let mut links = Links::find(&ensemble);
     for (linking_samples, expected) in [(19.99, 1), (20.0, 0), (20.01, 0)] {
         links.tree = vec![Link { windows: (0, 1), difference: 0.1, linking_samples }];
-        let findings = look_at_links(&ensemble, &links);
+        let findings = look_at_links(&ensemble, &links, false);
         assert_eq!(codes(&findings), vec!["thin-link"; expected], "{linking_samples}");
         if let [finding] = findings.as_slice() {
             let record = finding.record();
@@ -75,9 +78,11 @@ fn windows_are_linked_from_one_effective_sample_on() {
         }
         assert_eq!(Links::find(&thinned).groups.len(), groups, "{factor}");
     }
-    let findings = look_at_links(&thinned, &Links::find(&thinned));
+    let findings = look_at_links(&thinned, &Links::find(&thinned), false);
     assert_eq!(codes(&findings), ["not-linked"]);
     assert_eq!(findings[0].severity(), Severity::Error);
+    let allowed = look_at_links(&thinned, &Links::find(&thinned), true);
+    assert_eq!((codes(&allowed), allowed[0].severity()), (vec!["not-linked"], Severity::Warning));
 }
 
 #[test]
@@ -128,12 +133,43 @@ fn bins_with_a_handful_of_samples_have_no_error_and_are_counted() {
 }
 
 #[test]
+fn a_zero_is_thin_just_below_five_effective_samples() {
+    let mut profile = draw(&small_ensemble());
+    for (effective_samples, expected) in [(4.99, vec!["thin-zero"]), (5.0, vec![]), (5.01, vec![])] {
+        profile.zero_effective_samples = effective_samples;
+        let zero: Vec<&str> =
+            codes(&look_at_profile(&profile)).into_iter().filter(|code| *code == "thin-zero").collect();
+        assert_eq!(zero, expected, "{effective_samples}");
+    }
+}
+
+#[test]
+fn replicas_disagree_beyond_one_and_a_half_times_and_beyond_chance() {
+    let profile = draw(&small_ensemble());
+    let uncertainty = profile.bins.iter().find_map(|bin| bin.uncertainty).unwrap();
+    let with = |ratio: f64, degrees_between: f64| {
+        let error = ReplicaError { uncertainty, replicated_part: 0.8, ratio, degrees_between };
+        let bins = profile.bins.iter().map(|bin| bin.uncertainty.map(|_| error)).collect();
+        codes(&look_at_replicas(&profile, &BetweenReplicas { n_windows: 5, bins, windows: Vec::new() }))
+    };
+    // 99.9 % of χ²(20) lie below 45.31 (any table): 1.501² · 20 = 45.06 may be chance, 1.51² · 20 = 45.60 is none.
+    assert_eq!(with(1.5, 20.0), Vec::<&str>::new());
+    assert_eq!(with(1.501, 20.0), Vec::<&str>::new());
+    assert_eq!(with(1.51, 20.0), ["replicas-disagree"]);
+    // With many degrees of freedom the factor decides, with one chance does: 99.9 % of χ²(1) lie below 10.83 = 3.29².
+    assert_eq!(with(1.499, 400.0), Vec::<&str>::new());
+    assert_eq!(with(1.501, 400.0), ["replicas-disagree"]);
+    assert_eq!(with(3.28, 1.0), Vec::<&str>::new());
+    assert_eq!(with(3.30, 1.0), ["replicas-disagree"]);
+}
+
+#[test]
 fn a_clean_set_gives_no_finding() {
     let case = cases::independent().unwrap();
     let ensemble = sampled(&case.system, None, case.edges[0], 0.05, 31, &CellChoice::Lattice);
     let links = Links::find(&ensemble);
     assert_eq!(look_at_ensemble(&ensemble), []);
-    assert_eq!(look_at_links(&ensemble, &links), []);
+    assert_eq!(look_at_links(&ensemble, &links, false), []);
 }
 
 #[test]
@@ -143,9 +179,14 @@ fn every_finding_says_what_to_do() {
         Finding::RepeatedFrames { window: "w".into(), file: "w.txt".into(), line: 7, frames: 3 },
         Finding::FewEffectiveSamples { window: "w".into(), effective_samples: 8.2 },
         Finding::NoErrorSupport { window: "w".into(), samples: 5 },
-        Finding::NotLinked { below: "v".into(), above: "w".into(), range: Some((0.25, 0.5)) },
+        Finding::NeverSettles { window: "w".into() },
+        Finding::UnsettledStart { window: "w".into(), samples: 300, gain: 2.5 },
+        Finding::ErrorsDisagree { ratio: 1.7, place: "in the bin at 0.5".into() },
+        Finding::ReplicasDisagree { ratio: 3.1, position: 0.5 },
+        Finding::NotLinked { below: "v".into(), above: "w".into(), range: Some((0.25, 0.5)), gaps_allowed: false },
         Finding::ThinLink { windows: ("v".into(), "w".into()), linking_samples: 3.1 },
         Finding::UnsampledBins { from: 0.5, to: 1.0, bins: 2 },
+        Finding::ThinZero { effective_samples: 1.5 },
         Finding::ErrorNotDetermined { bins: 2, of: 9 },
     ];
     let mut seen = codes(&all);

@@ -256,3 +256,18 @@ fn windows_that_overlap_too_thinly_have_no_stretch_to_name() {
     assert_eq!(links.groups.len(), 2);
     assert_eq!(links.uncovered[0].range, None);
 }
+
+#[test]
+fn windows_whose_samples_belong_to_each_others_bias_are_not_linked() {
+    // The files of two windows were mixed up: any difference of their free energies meets Bennett's equation, so nothing is linked by it.
+    let windows = [-0.5, 0.0, 0.5, 1.0].map(|center| Window::independent(harmonic(center, 30.0), 800)).to_vec();
+    let system = HarmonicSystem::new(0.2, 0.6, windows).unwrap();
+    let axis = axis(None);
+    let bins = BinGrid::new(0, 0.0, 0.1, None).unwrap();
+    let biases: Vec<Bias> = system.windows().iter().map(|window| bias(&window.restraint, &axis)).collect();
+    let mut series = system.sample_all(3, 0);
+    series.swap(0, 3);
+    let ensemble = assemble(&axis, bins, &biases, &series, &CellChoice::Lattice);
+    assert!(solve_pair(&ensemble, 0, 3).linking_samples < 1.0);
+    assert!(solve_pair(&ensemble, 1, 2).linking_samples > 20.0);
+}

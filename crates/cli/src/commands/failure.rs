@@ -6,7 +6,7 @@ use crate::output::OutputError;
 use crate::pipeline::{AnalysisError, ReadingError, ReadingProblem};
 use spandrel_solver::condense::CondenseError;
 use spandrel_solver::ensemble::{Ensemble, EnsembleError};
-use spandrel_solver::solve::{Links, SolveError};
+use spandrel_solver::solve::{Links, Method, SolveError};
 use std::fmt::Write as _;
 
 /// Problems of series shown one by one.
@@ -71,6 +71,12 @@ impl Failure {
                 ExitStatus::NotConverged,
                 "error: the likelihood has no curvature in some direction at the solution, so no error follows from it\n  help: some windows hang together by next to nothing; see the links that `spandrel check` names",
             ),
+            AnalysisError::Bootstrap(error) => Self::new(
+                ExitStatus::NotConverged,
+                format!(
+                    "error: {error}\n  help: leave `[errors]` out to do without a bootstrap; no result was written"
+                ),
+            ),
             AnalysisError::Profile(error) => Self::new(
                 ExitStatus::Profile,
                 format!("error: {error}\n  help: choose another `zero` or range in [profile], or sample that place"),
@@ -80,12 +86,14 @@ impl Failure {
                 ExitStatus::NotLinked,
                 ensemble.map_or_else(String::new, |ensemble| not_linked(ensemble, job, links)),
             ),
-            AnalysisError::Solve(error @ SolveError::NotConverged { .. }) => Self::new(
-                ExitStatus::NotConverged,
-                format!(
-                    "error: {error}\n  help: raise `max_iterations`, or use `method = \"newton\"` in [solver]; no result was written"
-                ),
-            ),
+            AnalysisError::Solve(error @ SolveError::NotConverged { method, .. }) => {
+                let advice = if *method == Method::Newton {
+                    "a window's samples may not belong to its bias: compare means and centers, units and files"
+                } else {
+                    "raise `max_iterations`, or use `method = \"newton\"` in [solver]"
+                };
+                Self::new(ExitStatus::NotConverged, format!("error: {error}\n  help: {advice}; no result was written"))
+            }
         }
     }
 
@@ -162,7 +170,7 @@ fn not_linked(ensemble: &Ensemble, job: &Job, links: &Links) -> String {
         };
     }
     text.push_str(
-        "  help: add windows there, or set `allow_gaps = true` in [solver] to solve each group with a zero of its own",
+        "  help: add windows there, or check that each window's samples belong to its bias (files, centers, units);\n        `allow_gaps = true` in [solver] solves each group with a zero of its own",
     );
     text
 }

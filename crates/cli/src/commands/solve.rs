@@ -5,7 +5,8 @@ use crate::interrupt::Interrupt;
 use crate::job::{self, Job};
 use crate::messages::Messages;
 use crate::output::{
-    FIGURE, PMF, SUMMARY, Staging, Summary, WINDOWS, pmf_csv, profile_figure, solve_text, windows_csv,
+    COVARIANCE, FIGURE, PMF, SUMMARY, Staging, Summary, WINDOWS, covariance_csv, pmf_csv, profile_figure, solve_text,
+    windows_csv,
 };
 use crate::pipeline::{lay_out, read_windows, solve_parts};
 use std::path::PathBuf;
@@ -37,8 +38,12 @@ pub fn solve(request: &SolveRequest, messages: Messages, interrupt: &Interrupt) 
 
     let pmf = pmf_csv(&job, &parts).map_err(|error| Failure::of_formatting(&error))?;
     let windows = windows_csv(&job, &read, &analysis, &parts).map_err(|error| Failure::of_formatting(&error))?;
-    let figure = profile_figure(&job, &parts).into_bytes();
-    for (name, bytes) in [(PMF, &pmf), (WINDOWS, &windows), (FIGURE, &figure)] {
+    let mut files = vec![(PMF, pmf), (WINDOWS, windows), (FIGURE, profile_figure(&job, &parts).into_bytes())];
+    if job.covariance {
+        let covariance = covariance_csv(&job, &parts).map_err(|error| Failure::of_formatting(&error))?;
+        files.push((COVARIANCE, covariance));
+    }
+    for (name, bytes) in &files {
         staging.write(name, bytes).map_err(|error| Failure::of_output(&error))?;
     }
     let summary = Summary::new(&job, &read, &analysis, &parts, staging.files());

@@ -39,6 +39,8 @@ pub enum Section {
     Zero,
     /// `[solver]`
     Solver,
+    /// `[errors]`
+    Errors,
     /// `[output]`
     Output,
 }
@@ -64,6 +66,7 @@ impl Section {
             Self::Profile => "profile",
             Self::Zero => "profile.zero",
             Self::Solver => "solver",
+            Self::Errors => "errors",
             Self::Output => "output",
         }
     }
@@ -92,6 +95,7 @@ impl fmt::Display for Section {
             | Self::Exclude
             | Self::Profile
             | Self::Solver
+            | Self::Errors
             | Self::Output => {
                 write!(formatter, "`[{}]`", self.path())
             }
@@ -142,6 +146,7 @@ pub const KEYS: &[Key] = &[
     key(Section::Top, "exclude", "a table", "nothing is left out", "what is left out", "[exclude]"),
     key(Section::Top, "profile", "a table", "required", "what the free-energy profile looks like", "[profile]"),
     key(Section::Top, "solver", "a table", "all defaults", "how the equations are solved", "[solver]"),
+    key(Section::Top, "errors", "a table", "all defaults", "where the errors come from", "[errors]"),
     key(Section::Top, "output", "a table", "all defaults", "where the results go", "[output]"),
     key(Section::System, "temperature", "a number above 0, in kelvin", "required", "temperature of all windows", "temperature = 310.0"),
     key(Section::System, "energy_unit", "`kJ/mol`, `kcal/mol`, `kT` or `eV`", "required", "unit of the results, and of energies in the job that give none", r#"energy_unit = "kcal/mol""#),
@@ -159,10 +164,11 @@ pub const KEYS: &[Key] = &[
     key(Section::Time, "unit", "`fs`, `ps`, `ns` or `us`", "required", "unit of `column` or `interval`", r#"unit = "ps""#),
     key(Section::SeriesColumn, "column", "a column number from 1, or a name of the header", "required", "the column that holds the axis", r#"column = "z""#),
     key(Section::SeriesColumn, "unit", "a unit of the axis' kind", "the axis' unit", "unit of the numbers in the files", r#"unit = "angstrom""#),
-    key(Section::Discard, "time", "a number from 0", "one of the three", "frames earlier than this after the first frame are left out", "time = 150.0"),
+    key(Section::Discard, "time", "a number from 0", "one of the four", "frames earlier than this after the first frame are left out", "time = 150.0"),
     key(Section::Discard, "unit", "`fs`, `ps`, `ns` or `us`", "required with `time`", "unit of `time`", r#"unit = "ps""#),
-    key(Section::Discard, "frames", "a whole number from 0", "one of the three", "this many frames are left out", "frames = 25"),
-    key(Section::Discard, "fraction", "a number from 0, below 1", "one of the three", "this fraction of the frames is left out", "fraction = 0.15"),
+    key(Section::Discard, "frames", "a whole number from 0", "one of the four", "this many frames are left out", "frames = 25"),
+    key(Section::Discard, "fraction", "a number from 0, below 1", "one of the four", "this fraction of the frames is left out", "fraction = 0.15"),
+    key(Section::Discard, "automatic", "`true` or `false`", "one of the four", "each replica loses what it shows itself not to have settled: the beginning without which it holds evidently more independent samples", "automatic = true"),
     key(Section::Window, "name", "text", "required", "name of the window, unique", r#"name = "z00""#),
     key(Section::Window, "files", "a list of paths or patterns", "this or `replicas`", "segments of one run, in the order of time; patterns are expanded in natural order", r#"files = ["z00.txt"]"#),
     key(Section::Window, "replicas", "a list of lists of paths or patterns", "this or `files`", "independent starts, each a list of segments", r#"replicas = [["z00a.txt"], ["z00b.txt"]]"#),
@@ -207,11 +213,11 @@ pub const KEYS: &[Key] = &[
     key(Section::Stretch, "from", "a number, in the axis' unit", "required", "lower end", "from = 1.2"),
     key(Section::Stretch, "to", "a number above `from`", "required", "upper end", "to = 1.4"),
     key(Section::Profile, "axis", "name of an axis", "the only axis", "the axis of the profile", r#"axis = "distance""#),
-    key(Section::Profile, "from", "a number, in the axis' unit", "the sampled range; with a period, half a period below 0", "lower end of the profile", "from = 0.3"),
+    key(Section::Profile, "from", "a number, in the axis' unit", "the sampled range; with a period, `to` less the period, else `origin`, else half a period below 0", "lower end of the profile", "from = 0.3"),
     key(Section::Profile, "to", "a number above `from`", "the sampled range; with a period, `from` plus the period", "upper end of the profile", "to = 2.7"),
     key(Section::Profile, "bin_width", "a number above 0, in the axis' unit", "this or `bins`", "width of a bin", "bin_width = 0.05"),
     key(Section::Profile, "bins", "a whole number from 1", "this or `bin_width`", "number of bins; needs `from` and `to`, or a period", "bins = 60"),
-    key(Section::Profile, "origin", "a number, in the axis' unit", "`from`, else 0", "a position at which a bin begins", "origin = 0.3"),
+    key(Section::Profile, "origin", "a number, in the axis' unit", "`from`, else 0; with a period, the lower end of the profile", "a position at which a bin begins", "origin = 0.3"),
     key(Section::Profile, "zero", "`minimum` or a table", "`minimum`", "where the free energy is zero", r#"zero = "minimum""#),
     key(Section::Zero, "position", "a number, in the axis' unit", "this, or `from` and `to`", "the bin that holds this position is zero", "position = 2.5"),
     key(Section::Zero, "from", "a number, in the axis' unit", "with `to`", "the mean over a range is zero: lower end", "from = 2.5"),
@@ -223,5 +229,8 @@ pub const KEYS: &[Key] = &[
     key(Section::Solver, "cells", "`auto` or `samples`", "`auto`", "fine cells where they pay, or one cell for each sample", r#"cells = "samples""#),
     key(Section::Solver, "cell_error", "a number from 1e-8 to 1e-2, in kT", "1e-5", "largest local error of a cell", "cell_error = 1e-6"),
     key(Section::Solver, "seed", "a whole number from 0", "1", "start of the random numbers; it is written into every result", "seed = 12"),
+    key(Section::Errors, "method", "`influence` or `bootstrap`", "`influence`", "which errors are given: from the influence of each sample along each run, or from solving again on runs drawn anew in blocks of time", r#"method = "bootstrap""#),
+    key(Section::Errors, "bootstrap_replicates", "a whole number from 20", "1000 with `method = \"bootstrap\"`, else no bootstrap", "replicates of the bootstrap; with the errors from influences it is made as a check, and a finding if the two disagree", "bootstrap_replicates = 500"),
     key(Section::Output, "folder", "a path", "name of the job with `-result`", "folder of the results, relative to the job", r#"folder = "result""#),
+    key(Section::Output, "covariance", "`true` or `false`", "`false`", "writes the covariance of all bins to `covariance.csv`, for errors of any difference", "covariance = true"),
 ];

@@ -12,8 +12,10 @@ mod load;
 mod mark;
 mod model;
 mod nearest;
+mod number;
 mod paths;
 mod problem;
+mod reference;
 mod render;
 mod resolved;
 mod scalar;
@@ -23,10 +25,11 @@ mod typed;
 pub use keys::{KEYS, Key, Section};
 pub use load::load;
 pub use model::{
-    AuxiliaryFile, AuxiliaryRole, AxisColumn, CellChoice, Excluded, ExcludedReplica, Job, JobWindow, ProfileSettings,
-    SolverSettings, Stretch,
+    AuxiliaryFile, AuxiliaryRole, AxisColumn, CellChoice, ErrorMethod, ErrorSettings, Excluded, ExcludedReplica, Job,
+    JobWindow, ProfileSettings, SolverSettings, Stretch,
 };
 pub use problem::JobProblems;
+pub use reference::reference;
 pub use resolved::{
     ResolvedColumn, ResolvedJob, ResolvedProfile, ResolvedReplica, ResolvedSeries, ResolvedSolver, ResolvedTerm,
     ResolvedWindow, Setting,

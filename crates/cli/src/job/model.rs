@@ -45,8 +45,12 @@ pub struct Job {
     pub profile: ProfileSettings,
     /// How the equations are solved.
     pub solver: SolverSettings,
+    /// Where errors come from.
+    pub errors: ErrorSettings,
     /// Folder of the results.
     pub output_folder: PathBuf,
+    /// Whether the covariance of the bins is written.
+    pub covariance: bool,
     /// Files that were read for the job besides the series: the job itself, the table of windows, tables of biases.
     pub auxiliary: Vec<AuxiliaryFile>,
 }
@@ -81,6 +85,8 @@ pub struct JobWindow {
     pub bias: Bias,
     /// Which frames of each replica are kept; a time is in the job's `time_unit`.
     pub selection: Selection,
+    /// Whether each replica, besides, loses what it shows itself not to have settled.
+    pub automatic_start: bool,
     /// The bias in the job's own words, with every default filled in.
     pub terms: Vec<ResolvedTerm>,
 }
@@ -148,6 +154,32 @@ pub struct SolverSettings {
     pub cell_error: f64,
     /// Start of the random numbers.
     pub seed: u64,
+}
+
+/// Where errors come from.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize)]
+pub struct ErrorSettings {
+    /// Which errors are given.
+    pub method: ErrorMethod,
+    /// Replicates of the bootstrap; 0: none is made.
+    pub bootstrap_replicates: usize,
+}
+
+/// Which errors are given.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Serialize)]
+#[serde(rename_all = "lowercase")]
+pub enum ErrorMethod {
+    /// From the influence of each sample and batch means along each run.
+    #[default]
+    Influence,
+    /// From solving again on runs drawn anew in blocks of time.
+    Bootstrap,
+}
+
+impl ErrorMethod {
+    /// The words of a job.
+    pub(super) const WORDS: [(&'static str, Self); 2] =
+        [("influence", Self::Influence), ("bootstrap", Self::Bootstrap)];
 }
 
 /// What a cell is.

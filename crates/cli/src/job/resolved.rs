@@ -10,7 +10,7 @@ use spandrel_ingest::{Column, Selection, Separator, TimeSource};
 use spandrel_solver::profile::Zero;
 use spandrel_solver::solve::Method;
 
-use super::model::{AuxiliaryFile, AxisColumn, CellChoice, Excluded, Job, JobWindow};
+use super::model::{AuxiliaryFile, AxisColumn, CellChoice, ErrorSettings, Excluded, Job, JobWindow};
 use super::paths::JobFolder;
 use super::typed::FORMAT;
 
@@ -75,8 +75,12 @@ pub struct ResolvedJob {
     pub profile: ResolvedProfile,
     /// How the equations are solved.
     pub solver: ResolvedSolver,
+    /// Where errors come from.
+    pub errors: ErrorSettings,
     /// Folder of the results.
     pub output_folder: String,
+    /// Whether the covariance of the bins is written.
+    pub covariance: bool,
     /// Files that were read besides the series.
     pub auxiliary: Vec<AuxiliaryFile>,
 }
@@ -118,6 +122,8 @@ pub struct ResolvedWindow {
     pub bias: Vec<ResolvedTerm>,
     /// Which frames are kept.
     pub selection: Selection,
+    /// Whether each replica, besides, loses what it shows itself not to have settled.
+    pub automatic_start: bool,
 }
 
 /// A replica.
@@ -212,7 +218,9 @@ impl Job {
                 cell_error: self.solver.cell_error,
                 seed: self.solver.seed,
             },
+            errors: self.errors,
             output_folder: folder.shown(&self.output_folder),
+            covariance: self.covariance,
             auxiliary: self.auxiliary.clone(),
         }
     }
@@ -229,6 +237,7 @@ impl JobWindow {
             replicas: self.replica_numbers.iter().zip(&self.replicas).map(replica).collect(),
             bias: self.terms.clone(),
             selection: self.selection,
+            automatic_start: self.automatic_start,
         }
     }
 }

@@ -10,6 +10,7 @@ use spandrel_ingest::Column;
 
 use super::mark::{Mark, Typed};
 use super::nearest::{list, nearest};
+use super::number::readable;
 use super::problem::{Problem, Problems};
 
 /// A value with its place and the path of its key.
@@ -84,10 +85,7 @@ impl ScalarValue {
     /// The value as a message shows it.
     pub fn found(&self) -> String {
         match self {
-            Self::Number(number) if number.is_finite() => format!("{number:?}"),
-            Self::Number(number) if number.is_nan() => "nan".to_owned(),
-            Self::Number(number) if *number > 0.0 => "inf".to_owned(),
-            Self::Number(_) => "-inf".to_owned(),
+            Self::Number(number) => readable(*number),
             Self::Whole(number) => number.to_string(),
             Self::Text(text) => format!("the text {}", quoted(text)),
             Self::Flag(flag) => flag.to_string(),
@@ -99,7 +97,7 @@ impl ScalarValue {
 }
 
 /// Text in backticks, shortened.
-fn quoted(text: &str) -> String {
+pub(super) fn quoted(text: &str) -> String {
     const LONGEST: usize = 60;
     if text.chars().count() > LONGEST {
         let beginning: String = text.chars().take(LONGEST).collect();
@@ -255,9 +253,4 @@ fn one_of<T>(words: &[(&'static str, T)]) -> String {
         [others @ .., (last, _)] => format!("{} or `{last}`", list(others.iter().map(|(word, _)| *word))),
         [] => String::new(),
     }
-}
-
-/// A number that was calculated, without the last digits that rounding left.
-pub(super) fn neat(number: f64) -> f64 {
-    format!("{number:.11e}").parse().unwrap_or(number)
 }

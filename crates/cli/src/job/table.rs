@@ -9,7 +9,7 @@ use super::keys::Section;
 use super::mark::{Mark, SourceId};
 use super::nearest::{list, nearest};
 use super::problem::{Problem, Problems};
-use super::scalar::{Scalar, ScalarValue};
+use super::scalar::{Scalar, ScalarValue, quoted};
 
 /// A section of the job that is being read.
 pub(super) struct Table<'d> {
@@ -246,7 +246,7 @@ fn scalar_value(value: &DeValue<'_>) -> Option<ScalarValue> {
         }
         DeValue::Float(number) => Some(match number.as_str().parse::<f64>() {
             Ok(value) if value.is_infinite() && !number.as_str().contains("inf") => {
-                ScalarValue::Other(format!("`{}`, which is too large", number.as_str()))
+                ScalarValue::Other(format!("{}, which is too large", quoted(number.as_str())))
             }
             value => ScalarValue::Number(value.unwrap_or(f64::NAN)),
         }),

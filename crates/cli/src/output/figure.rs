@@ -19,8 +19,9 @@ pub fn profile_figure(job: &Job, parts: &[Part]) -> String {
     let energy_of_kt = job.energy_unit.from_reduced(1.0, job.temperature);
     ProfileFigure {
         position_label,
+        in_degrees: axis.unit() == PositionUnit::Degree,
         energy_label: format!("free energy ({})", job.energy_unit),
-        curves: parts.iter().map(|part| Curve::of_profile(&part.profile, energy_of_kt)).collect(),
+        curves: parts.iter().map(|part| Curve::of_profile(&part.profile, part.band.as_ref(), energy_of_kt)).collect(),
     }
     .to_svg()
 }

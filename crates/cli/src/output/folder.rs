@@ -80,7 +80,11 @@ impl fmt::Display for OutputError {
             Self::NotAFolder { folder } => {
                 write!(f, "output folder `{}` exists and is not a folder; give another one", folder.display())
             }
-            Self::Io { doing, path, error } => write!(f, "{doing} `{}`: {error}", path.display()),
+            Self::Io { doing, path, error } => write!(
+                f,
+                "{doing} `{}`: {error}; free the place, or give another folder with `--output`",
+                path.display()
+            ),
         }
     }
 }
@@ -110,15 +114,13 @@ impl Staging {
     /// A folder that is occupied, a path that is no folder, or a parent folder that cannot be written to.
     pub fn open(folder: &Path, force: bool) -> Result<Self, OutputError> {
         let earlier = earlier_files(folder, force)?;
-        let parent = match folder.parent() {
-            Some(parent) if !parent.as_os_str().is_empty() => parent,
-            _ => Path::new("."),
-        };
-        fs::create_dir_all(parent).map_err(io_error("cannot create", parent))?;
+        // A new folder grows beside its place and is moved there whole; in one that exists files are put one by one.
+        let place = if folder.is_dir() { folder } else { parent_of(folder) };
+        fs::create_dir_all(place).map_err(io_error("cannot create", place))?;
         let staged = tempfile::Builder::new()
             .prefix(".spandrel-partial-")
-            .tempdir_in(parent)
-            .map_err(io_error("cannot write into", parent))?;
+            .tempdir_in(place)
+            .map_err(io_error("cannot write into", place))?;
         Ok(Self { folder: folder.to_path_buf(), staged, files: Vec::new(), earlier })
     }
 
@@ -144,11 +146,7 @@ impl Staging {
     /// A file in the way that is not ours, or what the system refuses.
     pub fn finish(self, summary: &[u8]) -> Result<(), OutputError> {
         self.write_through(SUMMARY, summary)?;
-        let is_new = match fs::read_dir(&self.folder) {
-            Ok(mut entries) => entries.next().is_none(),
-            Err(_) => true,
-        };
-        if is_new {
+        if !self.folder.is_dir() {
             return self.put_whole_folder();
         }
         let names: Vec<&str> = self.files.iter().map(|file| file.name.as_str()).chain([SUMMARY]).collect();
@@ -176,9 +174,6 @@ impl Staging {
 
     fn put_whole_folder(self) -> Result<(), OutputError> {
         let folder = self.folder;
-        if folder.is_dir() {
-            fs::remove_dir(&folder).map_err(io_error("cannot write", &folder))?;
-        }
         let staged = self.staged.keep();
         open_to_readers(&staged);
         fs::rename(&staged, &folder).map_err(|error| {
@@ -200,6 +195,13 @@ impl Staging {
             }
         }
         Ok(())
+    }
+}
+
+fn parent_of(folder: &Path) -> &Path {
+    match folder.parent() {
+        Some(parent) if !parent.as_os_str().is_empty() => parent,
+        _ => Path::new("."),
     }
 }
 

@@ -11,7 +11,7 @@ pub const PMF: &str = "pmf.csv";
 /// Version of its columns.
 const PMF_FORMAT: u32 = 1;
 
-const COLUMNS: [&str; 13] = [
+const COLUMNS: [&str; 15] = [
     "group",
     "position",
     "lower",
@@ -20,6 +20,8 @@ const COLUMNS: [&str; 13] = [
     "standard_error",
     "interval_lower",
     "interval_upper",
+    "band_lower",
+    "band_upper",
     "degrees_of_freedom",
     "status",
     "samples",
@@ -34,7 +36,7 @@ const COLUMNS: [&str; 13] = [
 pub fn pmf_csv(job: &Job, parts: &[Part]) -> Result<Vec<u8>, csv::Error> {
     let axis = &job.axes[job.profile.bins.axis()];
     let mut text = format!(
-        "# {PMF}, format {PMF_FORMAT}, {} {}\n# position, lower, upper: {} in {}; energies in {}, relative to the zero: {}\n# standard_error and interval (95 %) are those of the difference from the zero; fields are empty where the data support no number\n",
+        "# {PMF}, format {PMF_FORMAT}, {} {}\n# position, lower, upper: {} in {}; energies in {}, relative to the zero: {}\n# standard_error and interval (95 %) are those of the difference from the zero; the band (95 %) holds the whole curve at once; fields are empty where the data support no number\n",
         crate::PROGRAM,
         crate::VERSION,
         axis.name(),
@@ -47,12 +49,11 @@ pub fn pmf_csv(job: &Job, parts: &[Part]) -> Result<Vec<u8>, csv::Error> {
     writer.write_record(COLUMNS)?;
     let energy = |reduced: f64| job.energy_unit.from_reduced(reduced, job.temperature);
     for (number, part) in (1..).zip(parts) {
-        for bin in &part.profile.bins {
+        for (i, bin) in part.profile.bins.iter().enumerate() {
             let error = bin.uncertainty.as_ref();
-            let interval = |sign: f64| {
-                let (f, error) = (bin.free_energy?, error?);
-                Some(energy(f + sign * error.half_width_95))
-            };
+            let band = part.band.as_ref().and_then(|band| band.half_widths[i]);
+            let around = |half_width: Option<f64>, sign: f64| Some(energy(bin.free_energy? + sign * half_width?));
+            let pointwise = error.map(|error| error.half_width_95);
             writer.write_record([
                 number.to_string(),
                 field(Some(bin.center())),
@@ -60,8 +61,10 @@ pub fn pmf_csv(job: &Job, parts: &[Part]) -> Result<Vec<u8>, csv::Error> {
                 field(Some(bin.upper)),
                 field(bin.free_energy.map(energy)),
                 field(error.map(|error| energy(error.standard_error))),
-                field(interval(-1.0)),
-                field(interval(1.0)),
+                field(around(pointwise, -1.0)),
+                field(around(pointwise, 1.0)),
+                field(around(band, -1.0)),
+                field(around(band, 1.0)),
                 field(error.map(|error| error.degrees_of_freedom)),
                 bin.status.name().to_owned(),
                 bin.n_samples.to_string(),

@@ -6,6 +6,7 @@ use super::summary::NOT_COVERED;
 use crate::job::Job;
 use crate::pipeline::{Analysis, Part, ReadWindow};
 use spandrel_solver::findings::{Finding, Severity};
+use std::collections::BTreeSet;
 use std::fmt::Write as _;
 use std::path::Path;
 
@@ -144,7 +145,8 @@ fn findings_text(findings: &[Finding]) -> String {
         .collect();
     let mut text = format!("Findings: {}\n", counted.join(", "));
     kinds.sort_by_key(|(severity, _)| std::cmp::Reverse(*severity));
-    kinds.dedup();
+    let mut seen = BTreeSet::new();
+    kinds.retain(|(_, code)| seen.insert(*code));
     for (severity, code) in kinds {
         let alike: Vec<&Finding> = findings.iter().filter(|finding| finding.code() == code).collect();
         for finding in alike.iter().take(SHOWN_OF_A_KIND) {

@@ -1,10 +1,11 @@
 //! `summary.json`: everything that says where a result comes from and how far it goes.
 
 use super::folder::ListedFile;
-use crate::job::{Job, ResolvedJob};
-use crate::pipeline::{Analysis, Part, ReadWindow};
+use crate::job::{ErrorMethod, Job, ResolvedJob};
+use crate::pipeline::{Analysis, BAND_PROBABILITY, Part, ReadWindow};
 use serde::Serialize;
 use spandrel_ingest::SegmentReport;
+use spandrel_solver::bootstrap::Bootstrap;
 use spandrel_solver::findings::{Finding, FindingRecord};
 use spandrel_solver::profile::Zero;
 use spandrel_solver::solve::{Certificate, Link, Method};
@@ -32,6 +33,7 @@ pub struct Summary {
     convergence: Vec<Convergence>,
     weakest_link: Option<NamedLink>,
     error_method: &'static str,
+    error_checks: Vec<ErrorCheck>,
     profiles: Vec<ProfileSummary>,
     findings: Vec<FindingRecord>,
     not_covered: [&'static str; 4],
@@ -66,6 +68,35 @@ struct Convergence {
     points: usize,
 }
 
+/// The errors of one group estimated in other ways.
+#[derive(Debug, Serialize)]
+struct ErrorCheck {
+    group: usize,
+    bootstrap_replicates: Option<usize>,
+    bootstrap_unsolved: Option<usize>,
+    /// Standard error from the bootstrap over that from influences, where it is farthest from 1.
+    bootstrap_over_influence: Option<f64>,
+    windows_with_replicas: Option<usize>,
+    /// Standard error between replicas over that along them, largest over the bins.
+    between_over_along_replicas: Option<f64>,
+}
+
+impl ErrorCheck {
+    fn of(group: usize, part: &Part) -> Self {
+        let bootstrap = part.bootstrap.as_ref();
+        let between = part.between_replicas.as_ref();
+        let ratios = between.iter().flat_map(|between| &between.bins).flatten().map(|error| error.ratio);
+        Self {
+            group,
+            bootstrap_replicates: bootstrap.map(|bootstrap| bootstrap.n_replicates),
+            bootstrap_unsolved: bootstrap.map(|bootstrap| bootstrap.n_unsolved),
+            bootstrap_over_influence: bootstrap.and_then(Bootstrap::farthest_ratio).map(|farthest| farthest.ratio),
+            windows_with_replicas: between.map(|between| between.n_windows),
+            between_over_along_replicas: ratios.reduce(|largest, ratio| if ratio > largest { ratio } else { largest }),
+        }
+    }
+}
+
 #[derive(Debug, Serialize)]
 struct NamedLink {
     windows: [String; 2],
@@ -82,6 +113,9 @@ struct ProfileSummary {
     bins_with_error: usize,
     largest_standard_error: Option<f64>,
     energy_unit: String,
+    band_probability: f64,
+    /// Pointwise probability of each interval of the band.
+    band_pointwise_probability: Option<f64>,
 }
 
 impl Summary {
@@ -112,7 +146,11 @@ impl Summary {
                 windows: [name(*i), name(*j)],
                 linking_samples: *linking_samples,
             }),
-            error_method: "influence of each sample, batch means along each run",
+            error_method: match job.errors.method {
+                ErrorMethod::Influence => "influence of each sample, batch means along each run",
+                ErrorMethod::Bootstrap => "moving-block bootstrap, each replicate solved again",
+            },
+            error_checks: (1..).zip(parts).map(|(group, part)| ErrorCheck::of(group, part)).collect(),
             profiles: (1..).zip(parts).map(|(group, part)| profile_summary(job, group, part)).collect(),
             findings: analysis.findings.iter().map(Finding::record).collect(),
             not_covered: NOT_COVERED,
@@ -166,5 +204,7 @@ fn profile_summary(job: &Job, group: usize, part: &Part) -> ProfileSummary {
             .reduce(|largest, error| if error > largest { error } else { largest })
             .map(|error| job.energy_unit.from_reduced(error, job.temperature)),
         energy_unit: job.energy_unit.to_string(),
+        band_probability: BAND_PROBABILITY,
+        band_pointwise_probability: part.band.as_ref().map(|band| band.pointwise_probability),
     }
 }

@@ -8,5 +8,5 @@ mod analysis;
 mod notices;
 mod reading;
 
-pub use analysis::{Analysis, AnalysisError, Part, lay_out, solve_parts};
+pub use analysis::{Analysis, AnalysisError, BAND_PROBABILITY, Part, lay_out, solve_parts};
 pub use reading::{ReadReplica, ReadWindow, ReadingError, ReadingProblem, read_windows};

@@ -1,6 +1,6 @@
 //! What was left out while reading, as findings.
 
-use super::reading::ReadWindow;
+use super::reading::{ReadReplica, ReadWindow};
 use crate::job::Job;
 use spandrel_ingest::Notice;
 use spandrel_solver::findings::Finding;
@@ -10,6 +10,7 @@ pub(super) fn findings_of_reading(job: &Job, windows: &[ReadWindow]) -> Vec<Find
     let mut findings: Vec<Finding> = Vec::new();
     for (settings, window) in job.windows.iter().zip(windows) {
         for replica in &window.replicas {
+            findings.extend(finding_of_start(&settings.name, replica));
             for segment in &replica.report.segments {
                 let file = job.shown(&segment.path);
                 for notice in &replica.report.notices {
@@ -39,4 +40,18 @@ pub(super) fn findings_of_reading(job: &Job, windows: &[ReadWindow]) -> Vec<Find
         }
     }
     findings
+}
+
+/// A run that never settles, or whose beginning had not and was kept.
+fn finding_of_start(window: &str, replica: &ReadReplica) -> Option<Finding> {
+    let start = replica.start?;
+    let window = window.to_owned();
+    if !start.settles {
+        return Some(Finding::NeverSettles { window });
+    }
+    (start.evident && replica.cut == 0).then(|| Finding::UnsettledStart {
+        window,
+        samples: start.samples_dropped,
+        gain: start.effective_after / start.effective_before,
+    })
 }

@@ -7,7 +7,7 @@ use crate::progress::Progress;
 use rayon::prelude::*;
 use spandrel_ingest::{Chunk, IngestError, Place, ReadError, SeriesReport, read_series};
 use spandrel_solver::condense::{
-    CellLattice, CellScheme, CondenseError, CondensedReplica, Condenser, MAX_LEVEL, required_level,
+    CellLattice, CellScheme, CondenseError, CondensedReplica, Condenser, MAX_LEVEL, StartUp, required_level,
 };
 use std::path::PathBuf;
 
@@ -25,7 +25,11 @@ pub struct ReadReplica {
     pub report: SeriesReport,
     /// Kept frames that lay in an excluded stretch of an axis and were left out.
     pub excluded: u64,
-    /// The run in condensed form.
+    /// What the run shows of its beginning; `None` where it is too short to say.
+    pub start: Option<StartUp>,
+    /// Samples at its beginning that were cut because the run had not settled.
+    pub cut: u64,
+    /// The run in condensed form, without them.
     pub condensed: CondensedReplica,
 }
 
@@ -68,7 +72,7 @@ pub enum ReadingProblem {
 /// The first problem of every run that has one, or a wish to stop.
 pub fn read_windows(job: &Job, messages: Messages, interrupt: &Interrupt) -> Result<Vec<ReadWindow>, ReadingError> {
     if job.axes.len() > 1 || job.solver.cells == CellChoice::Samples {
-        return read_on(job, &CellScheme::Samples(job.profile.bins), messages, interrupt);
+        return Ok(settled(job, read_on(job, &CellScheme::Samples(job.profile.bins), messages, interrupt)?));
     }
     let bins = job.profile.bins;
     let along = bins.axis();
@@ -87,10 +91,33 @@ pub fn read_windows(job: &Job, messages: Messages, interrupt: &Interrupt) -> Res
             .map(|replica| replica.condensed.mean_squared_slope[along]);
         let needed = level_for(largest(&mut slopes).max(curvature));
         if needed <= level {
-            return Ok(windows.into_iter().map(|window| window.coarsened(needed)).collect());
+            return Ok(settled(job, windows.into_iter().map(|window| window.coarsened(needed)).collect()));
         }
         level = needed;
     }
+}
+
+/// The windows with the start of each run judged and, where the job says so and the gain is evident, cut.
+fn settled(job: &Job, windows: Vec<ReadWindow>) -> Vec<ReadWindow> {
+    let cut = |automatic: bool, replica: ReadReplica| {
+        let start = StartUp::of(&replica.condensed);
+        match start {
+            Some(start) if automatic && start.evident => ReadReplica {
+                cut: start.samples_dropped,
+                condensed: replica.condensed.without_leading_groups(start.groups_dropped),
+                start: Some(start),
+                ..replica
+            },
+            start => ReadReplica { start, ..replica },
+        }
+    };
+    job.windows
+        .par_iter()
+        .zip(windows)
+        .map(|(settings, window)| ReadWindow {
+            replicas: window.replicas.into_iter().map(|replica| cut(settings.automatic_start, replica)).collect(),
+        })
+        .collect()
 }
 
 impl ReadWindow {
@@ -196,5 +223,5 @@ fn read_run(
         let file = segments.first().cloned().unwrap_or_default();
         return Err(problem(ReadingProblem::NothingLeft { window: window.name.clone(), file }));
     }
-    Ok(ReadReplica { report, excluded, condensed })
+    Ok(ReadReplica { report, excluded, start: None, cut: 0, condensed })
 }

@@ -233,7 +233,7 @@ fn a_column_of_a_table_value_must_be_text() {
     assert_data_eq!(
         report,
         str![[r#"
-error: `window_table.file`: expected a file that can be read, found nothing at `w.csv`
+error: `window_table.file`: expected a file, found nothing at `w.csv`
   --> job.toml:32:8
    |
 32 | file = "w.csv"

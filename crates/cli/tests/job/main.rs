@@ -6,6 +6,7 @@ mod axes;
 mod bias;
 mod examples;
 mod profile;
+mod reference;
 mod reports;
 mod support;
 mod tables;

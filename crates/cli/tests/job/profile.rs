@@ -9,7 +9,7 @@ fn bins_must_fill_the_range() {
     assert_data_eq!(
         report,
         str![[r#"
-error: `profile.bin_width`: expected a whole number of bins in the range of 0.6, found 8.5714
+error: `profile.bin_width`: expected a whole number of bins in the range of 0.6, found 8.57143
   --> job.toml:34:13
    |
 32 | from = 0.5
@@ -19,7 +19,7 @@ error: `profile.bin_width`: expected a whole number of bins in the range of 0.6,
 34 | bin_width = 0.07
    |             ^^^^
    |
-   = help: a width of 0.0666666666667 gives 9 bins
+   = help: use `bins = 9`, each of which is 0.0666667 wide
 
 1 problem in job.toml
 "#]]
@@ -48,11 +48,56 @@ error: `profile.bin_width`: expected a whole number of bins in the period of 2.4
 35 | bin_width = 0.07
    |             ^^^^
    |
-   = help: a width of 0.0705882352941 gives 34 bins
+   = help: use `bins = 7` or `bin_width = 0.05`
 
 1 problem in job.toml
 "#]]
         .raw()
+    );
+}
+
+/// The help on bins that do not fit, from the report on a job with this profile.
+fn help(job: &str) -> String {
+    let report = Folder::new().report(job);
+    report.lines().filter_map(|line| line.split_once("= help: ")).map(|(_, help)| help).collect()
+}
+
+#[test]
+fn a_width_that_fits_and_can_be_typed_is_offered_beside_the_number_of_bins() {
+    assert_eq!(help(&with(&[("bin_width = 0.05", "bin_width = 0.059")])), "use `bins = 10` or `bin_width = 0.06`");
+    assert_eq!(help(&periodic("bin_width = 0.13\n")), "use `bins = 18`, each of which is 0.133333 wide");
+    assert_eq!(help(&periodic("bin_width = 0.11\n")), "use `bins = 22`, each of which is 0.109091 wide");
+    // 0.3 is an eighth of the period, which takes 328.8 of these bins, and 328 is 41 times 8.
+    assert_eq!(
+        help(&periodic("from = 0.5\nto = 0.8\nbin_width = 0.0073\n")),
+        "use `bins = 41`, each of which is 0.00731707 wide"
+    );
+}
+
+#[test]
+fn what_is_offered_is_taken() {
+    for profile in
+        ["bin_width = 0.13\n", "from = 0.5\nto = 0.85\nbin_width = 0.07\n", "from = -1.0\nto = 0.5\nbins = 7\n"]
+    {
+        let help = help(&periodic(profile));
+        let (_, offered) = help.split_once("`bins = ").unwrap();
+        let (number, _) = offered.split_once('`').unwrap();
+        let ends = profile.split_once("bin").map_or("", |(ends, _)| ends);
+        Folder::new().load(&periodic(&format!("{ends}bins = {number}\n"))).unwrap_or_else(|report| panic!("{report}"));
+        if let Some((_, width)) = offered.split_once("`bin_width = ") {
+            let width = width.trim_end_matches('`');
+            Folder::new()
+                .load(&periodic(&format!("{ends}bin_width = {width}\n")))
+                .unwrap_or_else(|report| panic!("{report}"));
+        }
+    }
+}
+
+#[test]
+fn a_range_that_shares_no_width_with_the_period_is_told_so() {
+    assert_eq!(
+        help(&periodic("from = 0.5\nto = 1.2071067811865476\nbins = 10\n")),
+        "leave `from` and `to` out, or choose a range that is a simple fraction of the period"
     );
 }
 
@@ -206,7 +251,7 @@ fn an_origin_is_a_whole_number_of_bins_from_the_range() {
     assert_data_eq!(
         report,
         str![[r#"
-error: `profile.origin`: expected a whole number of bins from `from`, 0.5, found -0.4000
+error: `profile.origin`: expected a whole number of bins from `from`, 0.5, found -0.4
   --> job.toml:35:10
    |
 35 | origin = 0.52

@@ -322,3 +322,98 @@ error: `profile.bin_widht`: unknown key in `[profile]`
         .raw()
     );
 }
+
+/// Texts for the numbers below `count`, one after another.
+fn repeated(count: u32, text: impl Fn(u32) -> String) -> String {
+    (0..count).map(text).collect::<Vec<_>>().concat()
+}
+
+#[test]
+fn twenty_of_very_many_problems_are_shown_and_the_rest_is_counted() {
+    let windows = repeated(1000, |i| {
+        format!("[[window]]\nname = \"w{i}\"\nfiles = [\"runs/old/w{i}.txt\"]\n[[window.bias]]\nkind = \"none\"\n")
+    });
+    let report = report(&[("[profile]", &format!("{windows}\n[profile]"))]);
+    assert_eq!(report.matches("error: ").count(), 20, "{report}");
+    assert!(report.contains("found nothing at `runs/old/w19.txt`"), "{report}");
+    assert!(report.ends_with("\n\nand 980 more problems\n\n1000 problems in job.toml"), "{report}");
+    assert_eq!(report.matches("   = help: there is no folder `runs`\n").count(), 20, "{report}");
+}
+
+#[test]
+fn one_problem_beyond_twenty_is_one() {
+    let unknown = repeated(21, |i| format!("key{i} = {i}\n"));
+    let report = report(&[("energy_unit", &format!("{unknown}energy_unit"))]);
+    assert!(report.ends_with("\n\nand 1 more problem\n\n21 problems in job.toml"), "{report}");
+}
+
+#[test]
+fn a_file_of_data_given_as_a_job_is_one_problem() {
+    let folder = Folder::new();
+    let rows = repeated(1000, |i| format!("{i}.0 0.{i}\n"));
+    folder.write("z.txt", &format!("# time z, k = 850\n\n{rows}"));
+    assert_data_eq!(
+        folder.load_file("z.txt").unwrap_err(),
+        str![[r#"
+error: expected a job in TOML, found a text without any key
+ --> z.txt:3:1
+  |
+3 | 0.0 0.0
+  | ^^^^^^^
+  |
+  = help: a job begins with `format = 1`; the files of the windows are named in it
+
+1 problem in z.txt
+"#]]
+        .raw()
+    );
+}
+
+#[test]
+fn a_text_with_keys_of_another_kind_is_one_problem() {
+    let folder = Folder::new();
+    folder.write("run.ini", &"temp = 310 kelvin\nsteps = 5,000\n".repeat(40));
+    assert_data_eq!(
+        folder.load_file("run.ini").unwrap_err(),
+        str![[r#"
+error: expected a job in TOML, found a text with no key of a job: string values must be quoted, expected literal string
+ --> run.ini:1:8
+  |
+1 | temp = 310 kelvin
+  |        ^^^^^^^^^^
+  |
+  = help: a job begins with `format = 1`; the files of the windows are named in it
+
+1 problem in run.ini
+"#]]
+        .raw()
+    );
+}
+
+#[test]
+fn the_first_five_faults_of_the_syntax_are_shown() {
+    let broken = repeated(30, |i| format!("key{i} = 0,5\n"));
+    let report = report(&[("[profile]", &format!("{broken}[profile]"))]);
+    assert_eq!(report.matches("error: expected TOML").count(), 5, "{report}");
+    assert_eq!(report.matches("= help: mend these first; there are more like them below").count(), 1, "{report}");
+    assert!(report.ends_with("\n5 problems in job.toml"), "{report}");
+}
+
+#[test]
+fn numbers_are_shown_without_the_digits_that_rounding_leaves() {
+    for (typed, shown) in [
+        ("-1.4937500000000001", "-1.49375"),
+        ("-0.000000000045", "-4.5e-11"),
+        ("-1e300", "-1e300"),
+        ("-0.30000000000000004", "-0.3"),
+        ("-0.0", "0"),
+    ] {
+        let report = report(&[("temperature = 310.0", &format!("temperature = {typed}"))]);
+        let title = format!("error: `system.temperature`: expected a finite number above 0, found {shown}\n");
+        assert!(report.starts_with(&title), "{report}");
+    }
+    let digits = "7".repeat(400);
+    let report = report(&[("temperature = 310.0", &format!("temperature = {digits}.0"))]);
+    let title = format!("expected a finite number above 0, found `{}…`, which is too large\n", "7".repeat(60));
+    assert!(report.contains(&title), "{report}");
+}

@@ -90,7 +90,7 @@ fn a_missing_table_of_windows_is_named() {
     assert_data_eq!(
         report,
         str![[r#"
-error: `window_table.file`: expected a file that can be read, found nothing at `windows.csv`
+error: `window_table.file`: expected a file, found nothing at `windows.csv`
   --> job.toml:17:8
    |
 17 | file = "windows.csv"
@@ -229,7 +229,7 @@ error: `bias.force_constant`: expected a finite number above 0, found `nan`
 23 | force_constant = { column = "k" }
    |                             --- taken from this column
 
-2 problems in job.toml
+2 problems in windows.csv
 "#]]
         .raw()
     );
@@ -250,7 +250,7 @@ error: expected 4 cells in a row, as in the header, found 3
   |
   = help: put cells that hold a comma into double quotes
 
-1 problem in job.toml
+1 problem in windows.csv
 "#]]
         .raw()
     );
@@ -270,7 +270,7 @@ error: `files`: expected a file, found nothing at `left.text`
   = help: did you mean `left.txt`?
   = help: paths are relative to the folder of the job
 
-1 problem in job.toml
+1 problem in windows.csv
 "#]]
         .raw()
     );
@@ -291,7 +291,7 @@ error: `window.name`: expected a name for one window only, found `left` again
   |
   = help: give independent starts of one window as its `replicas`, other windows another name
 
-1 problem in job.toml
+1 problem in windows.csv
 "#]]
         .raw()
     );
@@ -324,7 +324,7 @@ error: `window_table.replica_column`: expected a replica of window `a` once, fou
   |
   = help: put the segments of one replica into one row, with `;` between them
 
-2 problems in job.toml
+2 problems in windows.csv
 "#]]
         .raw()
     );
@@ -414,15 +414,26 @@ error: `bias.outside`: expected `error`, `hold` or `extend`, found the text `cla
 "#]]
         .raw()
     );
-    assert_data_eq!(folder.report(&job.replace("clamp", "hold")), str![[r#"
-error: `bias.file`: bias.txt: `position` in row 3 of a bias table must be above that of the row before, 0.8, found 0.7; sort the table and keep each position once
-  --> job.toml:20:8
+    assert_data_eq!(
+        folder.report(&job.replace("clamp", "hold")),
+        str![[r#"
+error: `bias.file`: expected positions that increase, found 0.7 after 0.8
+  --> bias.txt:4:1
+   |
+ 4 | 0.7 3.0
+   | ^^^^^^^
+   |
+  ::: job.toml:20:8
    |
 20 | file = "bias.txt"
-   |        ^^^^^^^^^^
+   |        ---------- the table is asked for here
+   |
+   = help: sort the table and keep each position once
 
-1 problem in job.toml
-"#]].raw());
+1 problem in bias.txt
+"#]]
+        .raw()
+    );
 }
 
 #[test]
@@ -436,16 +447,179 @@ fn a_fault_in_a_table_of_a_bias_is_placed_in_its_file() {
     assert_data_eq!(
         folder.report(&job),
         str![[r#"
-error: `bias.file`: bias.txt:3:5: expected a number in column 2, found `lots`
+error: `bias.file`: expected a number in column 2, found `lots`
+  --> bias.txt:3:5
+   |
+ 3 | 0.8 lots
+   |     ^^^^
+   |
+  ::: job.toml:20:8
+   |
+20 | file = "bias.txt"
+   |        ---------- the table is asked for here
+   |
+   = help: repair the field, choose another column, or add the beginning of the line to the comment prefixes
+
+1 problem in bias.txt
+"#]]
+        .raw()
+    );
+}
+
+#[test]
+fn a_table_with_other_separators_is_told_so_once() {
+    for (sign, what, rest) in [
+        (";", "semicolons", "; several files of one row stay separated by `;`"),
+        ("\t", "tabs", ""),
+        ("   ", "blanks", ""),
+    ] {
+        let report = table_report(&TABLE.replace("right1.txt;right2.txt", "right1.txt").replace(',', sign), &[]);
+        let title = format!(
+            "error: `window_table.file`: expected commas between the columns, found {what}\n  --> windows.csv:1:1\n"
+        );
+        assert!(report.starts_with(&title), "{report}");
+        let help =
+            format!("= help: write commas in place of the {what}, and points in place of any decimal commas{rest}\n");
+        assert!(report.contains(&help), "{report}");
+        assert!(report.ends_with("\n1 problem in windows.csv"), "{report}");
+    }
+}
+
+#[test]
+fn a_table_of_one_column_may_have_blanks_in_its_name() {
+    let folder = Folder::new();
+    folder.write("windows.csv", "the file\nleft.txt\nright1.txt\n");
+    let job = table_job(&[
+        ("name_column = \"name\"\nfiles_column = \"file\"", "files_column = \"the file\""),
+        ("{ column = \"center\" }", "0.7"),
+        ("{ column = \"k\" }", "850.0"),
+    ]);
+    assert_eq!(folder.load(&job).unwrap_or_else(|report| panic!("{report}")).windows.len(), 2);
+}
+
+#[test]
+fn problems_in_several_files_are_counted_apart() {
+    let report = table_report(
+        &TABLE.replace("0.7", "wide").replace("0.9", "high"),
+        &[("[window_table]", "[window_tables]\n[window_table]")],
+    );
+    assert!(report.ends_with("\n3 problems: 1 in job.toml, 2 in windows.csv"), "{report}");
+}
+
+#[test]
+fn a_table_that_is_a_folder_does_not_offer_itself() {
+    let folder = Folder::new();
+    folder.write("windows.csv/a", "");
+    assert_data_eq!(
+        folder.report(&table_job(&[])),
+        str![[r#"
+error: `window_table.file`: expected a file, found the folder `windows.csv`
+  --> job.toml:17:8
+   |
+17 | file = "windows.csv"
+   |        ^^^^^^^^^^^^^
+   |
+   = help: name the table in it
+
+1 problem in job.toml
+"#]]
+        .raw()
+    );
+}
+
+/// The good job with tabulated biases in both windows.
+fn tabulated_job(left: &str, right: &str) -> String {
+    let harmonic = |center: &str| format!("kind = \"harmonic\"\ncenter = {center}\nforce_constant = 850.0");
+    let tabulated = |file: &str| format!("kind = \"tabulated\"\nfile = \"{file}\"");
+    with(&[(&harmonic("0.7"), &tabulated(left)), (&harmonic("0.9"), &tabulated(right))])
+}
+
+#[test]
+fn a_table_of_a_bias_that_is_a_folder_does_not_offer_itself() {
+    let folder = Folder::new();
+    folder.write("bias.txt/a", "");
+    folder.write("wall.txt", "0.6 4.0\n0.8 0.5\n");
+    assert_data_eq!(
+        folder.report(&tabulated_job("bias.txt", "wall.txt")),
+        str![[r#"
+error: `bias.file`: expected a file, found the folder `bias.txt`
   --> job.toml:20:8
    |
 20 | file = "bias.txt"
    |        ^^^^^^^^^^
    |
-   = help: repair the field, choose another column, or add the beginning of the line to the comment prefixes
+   = help: name the table in it
 
 1 problem in job.toml
 "#]]
         .raw()
+    );
+}
+
+#[test]
+fn the_table_of_another_bias_is_not_what_was_meant() {
+    let folder = Folder::new();
+    folder.write("bias2.txt", "0.6 4.0\n0.8 0.5\n");
+    let report = folder.report(&tabulated_job("bias1.txt", "bias2.txt"));
+    assert!(report.contains("found nothing at `bias1.txt`") && !report.contains("did you mean"), "{report}");
+    folder.write("bias3.txt", "0.6 4.0\n0.8 0.5\n");
+    let report = folder.report(&tabulated_job("bias1.txt", "bias2.txt"));
+    assert!(report.contains("= help: did you mean `bias3.txt`?"), "{report}");
+}
+
+#[test]
+fn a_fault_of_a_table_is_told_once_however_many_windows_use_it() {
+    let folder = Folder::new();
+    folder.write("bias.txt", "0.6 4.0\n0.8 0,5\n");
+    let report = folder.report(&tabulated_job("bias.txt", "bias.txt"));
+    assert_data_eq!(
+        report,
+        str![[r#"
+error: `bias.file`: expected a number in column 2, found `0,5`
+  --> bias.txt:2:5
+   |
+ 2 | 0.8 0,5
+   |     ^^^
+   |
+  ::: job.toml:20:8
+   |
+20 | file = "bias.txt"
+   |        ---------- the table is asked for here
+   |
+   = help: write points in place of decimal commas
+
+1 problem in bias.txt
+"#]]
+        .raw()
+    );
+}
+
+#[test]
+fn a_table_that_cannot_be_shown_is_placed_in_words() {
+    let folder = Folder::new();
+    // Larger than what is shown.
+    folder.write("bias.txt", &format!("{}0.8 lots\n", "# much to say\n".repeat(100_000)));
+    folder.write("wall.txt", "0.6 4.0\n0.8 0.5\n");
+    let report = folder.report(&tabulated_job("bias.txt", "wall.txt"));
+    assert!(
+        report.starts_with(
+            "error: `bias.file`: bias.txt:100001:5: expected a number in column 2, found `lots`\n  --> job.toml:20:8\n"
+        ),
+        "{report}"
+    );
+    assert!(report.ends_with("\n1 problem in job.toml"), "{report}");
+}
+
+#[test]
+fn a_table_longer_than_the_period_is_shown_with_readable_numbers() {
+    let folder = Folder::new();
+    folder.write("bias.txt", "1 4.0\n2 4.0\n8 0.5\n");
+    let job = tabulated_job("bias.txt", "bias.txt")
+        .replace("unit = \"nm\"", "unit = \"nm\"\nperiod = 0.60000000000000001")
+        .replace("file = \"bias.txt\"", "file = \"bias.txt\"\nposition_unit = \"angstrom\"");
+    let report = folder.report(&job);
+    assert!(
+        report.contains("`bias.file`: expected a table of at most one period, 0.6, found one of 0.7\n"),
+        "{report}"
     );
 }

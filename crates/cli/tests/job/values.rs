@@ -485,7 +485,7 @@ fn a_fraction_of_one_leaves_nothing() {
     assert_data_eq!(
         report,
         str![[r#"
-error: `discard.fraction`: expected a number of at least 0 and below 1, found 1.0
+error: `discard.fraction`: expected a number of at least 0 and below 1, found 1
   --> job.toml:14:24
    |
 14 | discard = { fraction = 1.0 }
@@ -503,7 +503,7 @@ fn only_one_way_to_discard_is_taken() {
     assert_data_eq!(
         report,
         str![[r#"
-error: `discard`: expected only one of the keys `time`, `frames`, `fraction`, found `frames`, `fraction`
+error: `discard`: expected only one of the keys `time`, `frames`, `fraction`, `automatic`, found `frames`, `fraction`
   --> job.toml:14:13
    |
 14 | discard = { frames = 20, fraction = 0.25 }
@@ -523,7 +523,7 @@ fn one_way_to_discard_is_needed() {
     assert_data_eq!(
         report,
         str![[r#"
-error: `discard`: expected one of the keys `time`, `frames`, `fraction`, found none
+error: `discard`: expected one of the keys `time`, `frames`, `fraction`, `automatic`, found none
   --> job.toml:14:11
    |
 14 | discard = {}

@@ -1,6 +1,6 @@
 //! What a job says about windows, their files, and what is left out.
 
-use crate::support::report;
+use crate::support::{Folder, report, with};
 use snapbox::{IntoData, assert_data_eq, str};
 
 #[test]
@@ -326,4 +326,60 @@ error: `exclude.stretches.to`: expected a number above `from`, 0.9, found 0.8
 "#]]
         .raw()
     );
+}
+
+/// The report on the good job with its folder changed first.
+fn report_in(folder: &Folder, changes: &[(&str, &str)]) -> String {
+    folder.report(&with(changes))
+}
+
+#[test]
+fn a_file_of_another_window_is_not_what_was_meant() {
+    let folder = Folder::new();
+    // Both windows of the job use files of near names, one of them below.
+    folder.write("left2.txt", "0.0 0.7\n");
+    let report = report_in(&folder, &[("\"left.txt\"", "\"left1.txt\""), ("\"right1.txt\"", "\"left2.txt\"")]);
+    assert!(report.contains("= help: did you mean `left.txt`?"), "{report}");
+    let report = report_in(
+        &folder,
+        &[("\"left.txt\"", "\"left1.txt\""), ("\"right1.txt\", \"right2.txt\"", "\"./left2.txt\", \"left.txt\"")],
+    );
+    assert!(report.contains("found nothing at `left1.txt`") && !report.contains("did you mean"), "{report}");
+}
+
+#[test]
+fn a_file_of_an_excluded_window_is_not_what_was_meant() {
+    for files in ["\"left2.txt\"", "\"left?.txt\""] {
+        let folder = Folder::new();
+        folder.write("left2.txt", "0.0 0.7\n");
+        std::fs::remove_file(folder.path("left.txt")).unwrap();
+        let excluded = "[exclude]\nwindows = [\"right\"]\n\n[profile]";
+        let report = report_in(
+            &folder,
+            &[("\"left.txt\"", "\"left1.txt\""), ("\"right1.txt\", \"right2.txt\"", files), ("[profile]", excluded)],
+        );
+        assert!(report.contains("found nothing at `left1.txt`") && !report.contains("did you mean"), "{report}");
+    }
+}
+
+#[test]
+fn neither_a_folder_nor_the_job_is_what_was_meant() {
+    let folder = Folder::new();
+    folder.write("lost.tx/a", "");
+    let report = report_in(&folder, &[("\"left.txt\"", "\"lost.txt\""), ("\"right1.txt\"", "\"jobb.toml\"")]);
+    assert!(report.contains("found nothing at `jobb.toml`"), "{report}");
+    assert!(report.contains("= help: did you mean `left.txt`?"), "{report}");
+    assert_eq!(report.matches("did you mean").count(), 1, "{report}");
+}
+
+#[test]
+fn a_missing_folder_is_named_as_far_as_it_is_missing() {
+    let folder = Folder::new();
+    folder.write("runs/a.txt", "");
+    let report = report_in(
+        &folder,
+        &[("\"left.txt\"", "\"runs/old/first/left.txt\""), ("\"right1.txt\"", "\"../absent/right1.txt\"")],
+    );
+    assert!(report.contains("= help: there is no folder `runs/old`\n"), "{report}");
+    assert!(report.contains("= help: there is no folder `../absent`\n"), "{report}");
 }

@@ -3,6 +3,7 @@
 use std::fmt;
 
 use super::{IngestError, NumberProblem, TextProblem};
+use crate::readable_number::readable_number;
 
 /// How many column names a message lists.
 const LISTED_NAMES: usize = 20;
@@ -33,6 +34,9 @@ impl fmt::Display for IngestError {
             Self::NotText { place, problem } => {
                 write!(formatter, "{place}: expected UTF-8 text, found {}", TextFinding(*problem))
             }
+            Self::LoneReturns { place } => {
+                write!(formatter, "{place}: expected lines that end in a line feed, found a carriage return alone")
+            }
             Self::LineTooLong { place, limit } => {
                 write!(formatter, "{place}: expected lines of at most {limit} bytes, found a longer one")
             }
@@ -50,7 +54,7 @@ impl fmt::Display for IngestError {
                     path.display()
                 )
             }
-            Self::BadNumber { place, found, problem } => {
+            Self::BadNumber { place, found, problem, .. } => {
                 write!(formatter, "{place}: expected a number")?;
                 if let Some(column) = place.column {
                     write!(formatter, " in column {column}")?;
@@ -74,7 +78,7 @@ impl fmt::Display for IngestError {
                 "{place}: expected {expected} {} as in line {first_line}, found {found}",
                 plural(*expected as u64, "field", "fields")
             ),
-            Self::MissingColumn { place, column, fields } => write!(
+            Self::MissingColumn { place, column, fields, .. } => write!(
                 formatter,
                 "{place}: expected a column {column}, found {fields} {}",
                 plural(*fields as u64, "column", "columns")
@@ -120,13 +124,18 @@ impl fmt::Display for IngestError {
                 }
                 write!(
                     formatter,
-                    ", found {found} after {previous}: {falls} of {rows} rows do not come after the row before"
+                    ", found {} after {}: {falls} of {rows} rows do not come after the row before",
+                    readable_number(*found),
+                    readable_number(*previous)
                 )
             }
             Self::NotAContinuation { path, first_time, last_time, previous_end } => write!(
                 formatter,
-                "{}: expected frames after time {previous_end}, where the segments before end, found times {first_time} to {last_time}",
-                path.display()
+                "{}: expected frames after time {}, where the segments before end, found times {} to {}",
+                path.display(),
+                readable_number(*previous_end),
+                readable_number(*first_time),
+                readable_number(*last_time)
             ),
             Self::AllDiscarded { path, frames } => write!(
                 formatter,
@@ -135,7 +144,8 @@ impl fmt::Display for IngestError {
             ),
             Self::TimeUnknown { discard } => write!(
                 formatter,
-                "expected known times for a `discard` of time {discard}, found neither a time column nor an interval"
+                "expected known times for a `discard` of time {}, found neither a time column nor an interval",
+                readable_number(*discard)
             ),
             Self::Setting { setting, expected, found } => {
                 write!(formatter, "`{setting}`: expected {expected}, found {found}")

@@ -10,6 +10,8 @@ use std::path::{Path, PathBuf};
 pub use place::Place;
 pub use read_error::ReadError;
 
+use crate::layout::Separator;
+
 /// Why a field is not a usable number.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
 pub enum NumberProblem {
@@ -36,6 +38,23 @@ pub enum TextProblem {
     InvalidByte(u8),
     /// It begins with the byte-order mark of UTF-16 or UTF-32.
     WideCharacters,
+}
+
+/// What the line at fault looks like, where that tells the cause.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub enum Clue {
+    /// The line can be read with this separator in place of the one that is set.
+    Separator(Separator),
+    /// Semicolons stand between the columns, which no setting reads.
+    Semicolons,
+    /// Its numbers have commas in place of points.
+    DecimalCommas,
+    /// Two numbers and a comma: two columns, or one number with a decimal comma.
+    Comma,
+    /// Words that may be a header, but not one name for each column.
+    Header,
+    /// A header, but a comment before it names the columns already.
+    SecondHeader,
 }
 
 /// A file, or a request about it, that cannot be used.
@@ -77,6 +96,11 @@ pub enum IngestError {
         /// What was found.
         problem: TextProblem,
     },
+    /// Lines end in a carriage return alone, so that the whole file is one line.
+    LoneReturns {
+        /// The first of them.
+        place: Box<Place>,
+    },
     /// A line is longer than any row of numbers.
     LineTooLong {
         /// The line.
@@ -108,6 +132,8 @@ pub enum IngestError {
         found: String,
         /// What is wrong with it.
         problem: NumberProblem,
+        /// What its line looks like.
+        clue: Option<Clue>,
     },
     /// A row has more or fewer fields than the first row.
     Ragged {
@@ -128,6 +154,8 @@ pub enum IngestError {
         column: usize,
         /// Fields in the row.
         fields: usize,
+        /// What the row looks like.
+        clue: Option<Clue>,
     },
     /// A wanted column name is not in the header.
     UnknownName {
@@ -222,6 +250,10 @@ pub enum IngestError {
 }
 
 impl IngestError {
+    pub(crate) fn lone_returns(place: Place) -> Self {
+        Self::LoneReturns { place: Box::new(place) }
+    }
+
     /// The file at fault, where one is.
     #[must_use]
     pub fn path(&self) -> Option<&Path> {
@@ -243,6 +275,7 @@ impl IngestError {
     pub const fn place(&self) -> Option<&Place> {
         match self {
             Self::NotText { place, .. }
+            | Self::LoneReturns { place }
             | Self::LineTooLong { place, .. }
             | Self::BadNumber { place, .. }
             | Self::Ragged { place, .. }

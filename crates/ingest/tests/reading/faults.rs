@@ -106,12 +106,140 @@ fn a_second_header_is_a_fault() {
 }
 
 #[test]
-fn a_comma_in_the_text_leads_to_advice_about_the_separator() {
-    let (message, error) = fault("0,5 1,5\n0,6 1,6\n", &timed());
-    assert_eq!(message, "run.txt:2:1: expected a number in column 1, found `0,6`");
+fn decimal_commas_are_named() {
+    // In the first row, which is no header, and farther down.
+    for (content, place) in [("0,5 1,5\n0,6 1,6\n", "run.txt:1:1"), ("0.5 1.5\n0,6 1.6\n", "run.txt:2:1")] {
+        let (message, error) = fault(content, &timed());
+        assert!(message.starts_with(&format!("{place}: expected a number in column 1, found `0,")), "{message}");
+        assert_eq!(error.advice(), "write points in place of decimal commas");
+    }
+}
+
+#[test]
+fn a_single_comma_may_be_of_either_kind() {
+    let (message, error) = fault("3,7\n4,9\n", &columns(&[number(1)]));
+    assert_eq!(message, "run.txt:1:1: expected a number in column 1, found `3,7`");
     assert_eq!(
         error.advice(),
         "if commas separate the columns, set the separator to comma; if they are decimal commas, write points"
+    );
+}
+
+#[test]
+fn a_separator_that_would_give_numbers_is_named() {
+    let whitespace = timed();
+    let tab = Layout { separator: Separator::Tab, ..timed() };
+    for (content, layout, advice) in [
+        ("0.5,1.5\n", &whitespace, "commas stand between the columns: set the separator to comma"),
+        ("0.5, 1.5\n", &whitespace, "commas stand between the columns: set the separator to comma"),
+        ("time, z\n0.5, 1.5\n", &whitespace, "commas stand between the columns: set the separator to comma"),
+        (
+            "Time (ps), Depth (nm)\n0.5, 1.5\n",
+            &whitespace,
+            "commas stand between the columns: set the separator to comma",
+        ),
+        ("Time (ps)\tDepth (nm)\n0.5\t1.5\n", &whitespace, "tabs stand between the columns: set the separator to tab"),
+        ("the time\tthe depth\n0.5\t1.5\n", &whitespace, "tabs stand between the columns: set the separator to tab"),
+        ("0.5\t1.5\n", &comma(timed()), "tabs stand between the columns: set the separator to tab"),
+        ("0.5 1.5\n", &comma(timed()), "blanks stand between the columns: set the separator to whitespace"),
+        ("0.5 1.5\n", &tab, "blanks stand between the columns: set the separator to whitespace"),
+        ("0.5,1.5\n", &tab, "commas stand between the columns: set the separator to comma"),
+    ] {
+        let (message, error) = fault(content, layout);
+        assert_eq!(error.advice(), advice, "{content:?}: {message}");
+    }
+    for content in ["0,5;1,5\n", "0.5;1.5;\n", "time;z\n0.5;1.5\n", "time; the depth\n0.5; 1.5\n"] {
+        for layout in [&whitespace, &tab, &comma(timed())] {
+            // Decimal commas do separate fields where commas do.
+            if layout.separator == Separator::Comma && content.contains(',') {
+                continue;
+            }
+            let (message, error) = fault(content, layout);
+            assert!(error.advice().starts_with("semicolons stand between the columns: "), "{content:?}: {message}");
+        }
+    }
+}
+
+#[test]
+fn names_that_another_separator_would_part_lead_to_advice_about_it() {
+    let (message, error) = fault("time,z\n0.5,1.5\n", &columns(&[name("z")]));
+    assert_eq!(message, "run.txt:1: expected a column named `z`, found `time,z`");
+    assert_eq!(
+        error.advice(),
+        "the header seems to hold several names: set the separator to the one that stands between them"
+    );
+}
+
+#[test]
+fn text_in_the_first_row_below_a_header_is_not_a_second_header() {
+    let three = Layout { columns: vec![number(3), number(2)], ..timed() };
+    for (first_row, place, advice) in [
+        ("0,1 -120,3 3,0", "run.txt:2:1: expected a number in column 1, found `0,1`", "write points"),
+        ("abc", "run.txt:2:1: expected a number in column 1, found `abc`", "if the line holds"),
+        ("a b c", "run.txt:2:1: expected a number in column 1, found `a`", "a comment before the line names"),
+        ("--- --- ---", "run.txt:2:1: expected a number in column 1, found `---`", "repair the field"),
+    ] {
+        let (message, error) = fault(format!("# time phi e\n{first_row}\n1 2 3\n"), &three);
+        assert_eq!(message, place);
+        assert!(error.advice().starts_with(advice), "{first_row}: {}", error.advice());
+    }
+}
+
+#[test]
+fn a_line_of_names_of_another_width_is_refused_at_its_first_wanted_column() {
+    let (message, error) = fault("Time (ps) Depth (nm)\n1 2\n", &columns(&[number(2)]));
+    assert_eq!(message, "run.txt:1:6: expected a number in column 2, found `(ps)`");
+    assert_eq!(
+        error.advice(),
+        "if the line holds the names of the columns, write one name for each, beginning with a letter, or make the line a comment"
+    );
+    assert_eq!(message_of_names("the time in picoseconds"), "run.txt:1:5: expected a number in column 2, found `time`");
+    // It does not reach as far as the wanted column.
+    assert_eq!(message_of_names("time"), "run.txt:1:1: expected a number, found `time`");
+}
+
+/// The message on a line of text before rows of three fields, of which the second is wanted.
+fn message_of_names(line: &str) -> String {
+    message(format!("{line}\n1 2 3\n"), &columns(&[number(2)]))
+}
+
+#[test]
+fn a_line_of_names_of_another_width_is_named_where_a_name_is_wanted() {
+    let (message, error) = fault("time depth\n1 2 3\n", &columns(&[name("depth")]));
+    assert_eq!(
+        message,
+        "run.txt:2: expected a header of 3 names with `depth` before this row, found 2 names in line 1"
+    );
+    assert!(error.advice().starts_with("write one name for each column"), "{}", error.advice());
+}
+
+#[test]
+fn carriage_returns_alone_are_named_as_line_ends() {
+    let expected = "expected lines that end in a line feed, found a carriage return alone";
+    for (content, place) in [
+        ("# time z\r0 1\r1 2\r", "run.txt:1:9"),
+        ("# time z\r0 1\r1 2\n", "run.txt:1:9"),
+        ("0 1\r1 2\r2 3", "run.txt:1:4"),
+        ("time z\r0 1\r1 2\n", "run.txt:1:7"),
+        ("# time z\r\n0 1\r1 2\r", "run.txt:2:4"),
+        ("0 1\n1 2\r2 3\n", "run.txt:2:4"),
+        ("0 1\n1 2\r2 3\r", "run.txt:2:4"),
+    ] {
+        let (message, error) = fault(content, &timed());
+        assert_eq!(message, format!("{place}: {expected}"), "{content:?}");
+        assert!(error.advice().starts_with("convert the line ends to line feeds"), "{}", error.advice());
+    }
+    let long = format!("# time z\r{}", "0.25 1.5\r".repeat(200_000));
+    assert_eq!(message(long, &timed()), format!("run.txt:1:9: {expected}"));
+}
+
+#[test]
+fn numbers_in_messages_have_no_noise() {
+    let time = 0.1 + 0.2;
+    let content = format!("1e300 1\n{time} 2\n-0.000000000045 3\n");
+    assert_eq!(
+        message(content, &timed()),
+        "run.txt:3: expected times that increase in column 1, found -4.5e-11 after 0.3: 2 of 3 rows do not come after the row before"
     );
 }
 
@@ -225,7 +353,7 @@ fn a_header_of_another_width_is_shown() {
     assert_eq!(message, "run.txt:2: expected a header of 2 names with `z` before this row, found 4 names in line 1");
     assert_eq!(
         error.advice(),
-        "give the column by its number; if words stand before the names in a comment, add them to the comment prefix"
+        "write one name for each column, or give the column by its number; if words stand before the names in a comment, add them to the comment prefix"
     );
 }
 

@@ -82,8 +82,8 @@ fn words_before_the_names_can_be_part_of_a_prefix() {
 }
 
 #[test]
-fn a_header_line_goes_before_comments() {
-    let content = "# z t\nt z\n1 2\n";
+fn a_line_of_names_is_the_header_below_a_comment_of_another_width() {
+    let content = "# by hand in summer\nt z\n# z t\n1 2\n";
     assert_eq!(values(content, &columns(&[name("z")])), [[2.0]]);
 }
 
@@ -97,7 +97,9 @@ fn names_may_stand_in_quotes_and_hold_blanks_and_commas() {
 
 #[test]
 fn a_header_line_is_passed_over_when_columns_are_numbers() {
-    assert_eq!(values("Time (ps) Distance (nm)\n1 2\n", &columns(&[number(2)])), [[2.0]]);
+    for header in ["Time Depth", "\"Time\" 'Depth'", "_t φ_1", "time[ps] z(nm)"] {
+        assert_eq!(values(format!("{header}\n1 2\n"), &columns(&[number(2)])), [[2.0]], "{header}");
+    }
 }
 
 #[test]

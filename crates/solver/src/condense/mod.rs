@@ -14,6 +14,8 @@ mod condenser;
 mod groups;
 mod lattice;
 mod replica;
+mod start;
+mod without_leading;
 
 pub use bins::{BinGrid, BinGridError};
 pub use cells::{Cells, LatticeCell};
@@ -21,3 +23,4 @@ pub use condenser::{CellScheme, CondenseError, Condenser};
 pub use groups::{Group, MAX_GROUPS};
 pub use lattice::{CellKey, CellLattice, DEFAULT_CELL_ERROR, MAX_LEVEL, required_level};
 pub use replica::CondensedReplica;
+pub use start::StartUp;

@@ -5,7 +5,7 @@ use super::shared_points::{has_axes, shared_points};
 use super::window_data::WindowData;
 use super::{Ensemble, Points, Stream, Window};
 use crate::condense::{BinGrid, CondensedReplica};
-use crate::series::{BatchRule, MeanLag};
+use crate::series::{BatchRule, Inefficiency, InefficiencyMethod, MeanLag};
 use spandrel_bias::Axis;
 use std::collections::BTreeMap;
 
@@ -83,25 +83,22 @@ fn check(axes: &[Axis], bins: &BinGrid, windows: &[WindowData]) -> Result<(), En
 fn stream(window: usize, replica: &CondensedReplica, numbers: &[u32]) -> Stream {
     let groups: Vec<_> = replica.groups.iter().map(|group| group.renumbered(numbers)).collect();
     let block_length = replica.blocks.block_length();
+    let n_axes = replica.reference.len();
     let mut slowest: Option<MeanLag> = None;
-    let mut inefficiency: Option<f64> = None;
-    for axis in 0..replica.reference.len() {
+    for axis in 0..n_axes {
         let Some(correlation) = MeanLag::of_block_means(&replica.blocks.channel(axis)) else { continue };
         if slowest.is_none_or(|so_far| correlation.mean_lag > so_far.mean_lag) {
             slowest = Some(correlation);
         }
-        let variance = replica.channels[axis].variance().unwrap_or(0.0);
-        if variance > 0.0 {
-            let g = correlation.statistical_inefficiency(block_length, variance);
-            inefficiency = Some(inefficiency.map_or(g, |so_far| so_far.max(g)));
-        }
     }
+    let inefficiency = |method| Inefficiency::slowest(&replica.blocks, &replica.channels[..n_axes], method);
     Stream {
         window,
         n_samples: replica.n_samples,
         batches: slowest.and_then(|lag| BatchRule::new(replica.blocks.n_blocks(), block_length, groups.len(), &lag)),
         groups,
-        inefficiency,
+        inefficiency: inefficiency(InefficiencyMethod::InitialSequence),
+        inefficiency_by_window: inefficiency(InefficiencyMethod::AutomaticWindow),
     }
 }
 
@@ -115,9 +112,9 @@ fn window(data: WindowData, axes: &[Axis], streams: &[Stream]) -> Window {
     let n_samples: u64 = data.replicas.iter().map(|replica| replica.n_samples).sum();
     let moments: Vec<(f64, f64)> =
         (0..axes.len()).map(|axis| pooled_moments(&axes[axis], axis, &data.replicas)).collect();
-    let of_stream = |stream: &Stream| stream.inefficiency.map(|g| stream.n_samples as f64 / g);
-    let effective_samples: f64 = streams.iter().map(|stream| of_stream(stream).unwrap_or(1.0)).sum();
-    let all_known = streams.iter().all(|stream| stream.inefficiency.is_some());
+    let pooled = |of_stream: fn(&Stream) -> Option<Inefficiency>| pooled_inefficiency(n_samples, streams, of_stream);
+    let inefficiency = pooled(|stream| stream.inefficiency);
+    let known = |stream: &Stream| stream.inefficiency.map_or(1.0, |g| g.effective_samples(stream.n_samples));
     Window {
         name: data.name,
         bias: data.bias,
@@ -126,9 +123,28 @@ fn window(data: WindowData, axes: &[Axis], streams: &[Stream]) -> Window {
         counts: counts.into_iter().collect(),
         mean: moments.iter().map(|(mean, _)| *mean).collect(),
         spread: moments.iter().map(|(_, spread)| *spread).collect(),
-        effective_samples,
-        inefficiency: all_known.then(|| n_samples as f64 / effective_samples),
+        effective_samples: streams.iter().map(known).sum(),
+        inefficiency,
+        inefficiency_by_window: pooled(|stream| stream.inefficiency_by_window),
     }
+}
+
+/// The inefficiency of all replicas together, N/Σ(N_r/g_r), with its standard error; `None` where one is not known.
+fn pooled_inefficiency(
+    n_samples: u64,
+    streams: &[Stream],
+    of_stream: fn(&Stream) -> Option<Inefficiency>,
+) -> Option<Inefficiency> {
+    let (mut effective, mut variance, mut method) = (0.0, 0.0, None);
+    for stream in streams {
+        let g = of_stream(stream)?;
+        let part = g.effective_samples(stream.n_samples);
+        effective += part;
+        variance += (part * g.standard_error / g.value).powi(2);
+        method = Some(g.method);
+    }
+    let value = n_samples as f64 / effective;
+    Some(Inefficiency { value, standard_error: value * variance.sqrt() / effective, method: method? })
 }
 
 /// Mean and standard deviation over all replicas; on an axis with a period each replica is taken at the image nearest to the first.

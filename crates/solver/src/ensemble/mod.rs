@@ -17,7 +17,7 @@ pub use points::Points;
 pub use window_data::WindowData;
 
 use crate::condense::{BinGrid, Group};
-use crate::series::BatchRule;
+use crate::series::{BatchRule, Inefficiency};
 use serde::Serialize;
 use spandrel_bias::{Axis, Bias};
 
@@ -40,8 +40,10 @@ pub struct Window {
     pub spread: Vec<f64>,
     /// Effective number of independent samples: Σ N/g over its replicas. A replica whose g is unknown counts as one sample.
     pub effective_samples: f64,
-    /// Statistical inefficiency of the slowest axis over all replicas, at least 1; `None` where a series does not support one.
-    pub inefficiency: Option<f64>,
+    /// Statistical inefficiency of the slowest axis over all replicas by the initial sequence; `None` where a series does not support one.
+    pub inefficiency: Option<Inefficiency>,
+    /// The same by the automatic window.
+    pub inefficiency_by_window: Option<Inefficiency>,
 }
 
 impl Window {
@@ -77,8 +79,10 @@ pub struct Stream {
     pub groups: Vec<Group>,
     /// How it is cut into batches; `None` where the series supports no error: one group, or a constant coordinate.
     pub batches: Option<BatchRule>,
-    /// Statistical inefficiency of its slowest axis.
-    pub inefficiency: Option<f64>,
+    /// Statistical inefficiency of its slowest axis by the initial sequence.
+    pub inefficiency: Option<Inefficiency>,
+    /// The same by the automatic window.
+    pub inefficiency_by_window: Option<Inefficiency>,
 }
 
 /// All windows on shared points.

@@ -1,6 +1,8 @@
 //! The findings, with their numbers inside.
 
 use super::catalog::{Severity, ThresholdOrigin};
+use crate::bootstrap::DISAGREEMENT;
+use crate::profile::FEWEST_EFFECTIVE_SAMPLES;
 use serde::Serialize;
 
 /// A conclusion about the data. Windows by name, positions in the axis' unit.
@@ -40,6 +42,34 @@ pub enum Finding {
         /// Its samples.
         samples: u64,
     },
+    /// A run that drifts to its end.
+    NeverSettles {
+        /// The window.
+        window: String,
+    },
+    /// The beginning of a run had not settled and was kept.
+    UnsettledStart {
+        /// The window.
+        window: String,
+        /// Samples at the beginning without which the run holds more independent ones.
+        samples: u64,
+        /// Effective samples without them over those with them.
+        gain: f64,
+    },
+    /// Errors from resampling differ from those from influences.
+    ErrorsDisagree {
+        /// Bootstrap over influences, where they are farthest apart.
+        ratio: f64,
+        /// Where that is, in words.
+        place: String,
+    },
+    /// Independent starts of the same windows differ by more than their own fluctuations in time explain.
+    ReplicasDisagree {
+        /// Standard error between replicas over that along them, for the worst bin.
+        ratio: f64,
+        /// Middle of that bin.
+        position: f64,
+    },
     /// Neighboring windows that no samples link.
     NotLinked {
         /// The window below the stretch.
@@ -48,6 +78,8 @@ pub enum Finding {
         above: String,
         /// Ends of the uncovered stretch; `None` where the two overlap, but by less than one independent sample.
         range: Option<(f64, f64)>,
+        /// Whether the groups are solved apart, as the user asked.
+        gaps_allowed: bool,
     },
     /// The link by which the whole profile hangs is thin.
     ThinLink {
@@ -64,6 +96,11 @@ pub enum Finding {
         to: f64,
         /// Bins in it.
         bins: usize,
+    },
+    /// The zero of the profile rests on so few samples that no difference from it has an error.
+    ThinZero {
+        /// Effective samples in it.
+        effective_samples: f64,
     },
     /// Bins with a free energy whose error the data do not support.
     ErrorNotDetermined {
@@ -120,9 +157,14 @@ impl Finding {
             Self::RepeatedFrames { .. } => "repeated-frames",
             Self::FewEffectiveSamples { .. } => "few-effective-samples",
             Self::NoErrorSupport { .. } => "no-error-support",
+            Self::NeverSettles { .. } => "never-settles",
+            Self::UnsettledStart { .. } => "unsettled-start",
+            Self::ErrorsDisagree { .. } => "errors-disagree",
+            Self::ReplicasDisagree { .. } => "replicas-disagree",
             Self::NotLinked { .. } => "not-linked",
             Self::ThinLink { .. } => "thin-link",
             Self::UnsampledBins { .. } => "unsampled-bins",
+            Self::ThinZero { .. } => "thin-zero",
             Self::ErrorNotDetermined { .. } => "error-not-determined",
         }
     }
@@ -133,10 +175,15 @@ impl Finding {
         match self {
             Self::CutLastLine { .. } | Self::RepeatedFrames { .. } | Self::FewEffectiveSamples { .. } => Severity::Note,
             Self::NoErrorSupport { .. }
+            | Self::NeverSettles { .. }
+            | Self::UnsettledStart { .. }
+            | Self::ErrorsDisagree { .. }
+            | Self::ReplicasDisagree { .. }
             | Self::ThinLink { .. }
             | Self::UnsampledBins { .. }
             | Self::ErrorNotDetermined { .. } => Severity::Warning,
-            Self::NotLinked { .. } => Severity::Error,
+            Self::NotLinked { gaps_allowed: true, .. } | Self::ThinZero { .. } => Severity::Warning,
+            Self::NotLinked { gaps_allowed: false, .. } => Severity::Error,
         }
     }
 
@@ -147,10 +194,16 @@ impl Finding {
             Self::CutLastLine { window, .. }
             | Self::RepeatedFrames { window, .. }
             | Self::FewEffectiveSamples { window, .. }
+            | Self::NeverSettles { window }
+            | Self::UnsettledStart { window, .. }
             | Self::NoErrorSupport { window, .. } => vec![window.clone()],
             Self::NotLinked { below, above, .. } => vec![below.clone(), above.clone()],
             Self::ThinLink { windows, .. } => vec![windows.0.clone(), windows.1.clone()],
-            Self::UnsampledBins { .. } | Self::ErrorNotDetermined { .. } => Vec::new(),
+            Self::ErrorsDisagree { .. }
+            | Self::ReplicasDisagree { .. }
+            | Self::UnsampledBins { .. }
+            | Self::ThinZero { .. }
+            | Self::ErrorNotDetermined { .. } => Vec::new(),
         }
     }
 
@@ -163,9 +216,16 @@ impl Finding {
                 (Some(effective_samples), Some(FEW_EFFECTIVE_SAMPLES), ThresholdOrigin::Calibration)
             }
             Self::NoErrorSupport { samples, .. } => (Some(samples as f64), None, ThresholdOrigin::Definition),
+            Self::NeverSettles { .. } => (None, None, ThresholdOrigin::Calibration),
+            Self::UnsettledStart { gain, .. } => (Some(gain), None, ThresholdOrigin::Calibration),
+            Self::ErrorsDisagree { ratio, .. } => (Some(ratio), Some(DISAGREEMENT), ThresholdOrigin::Calibration),
+            Self::ReplicasDisagree { ratio, .. } => (Some(ratio), Some(DISAGREEMENT), ThresholdOrigin::Calibration),
             Self::NotLinked { .. } => (None, Some(crate::solve::LEAST_LINK), ThresholdOrigin::Definition),
             Self::ThinLink { linking_samples, .. } => {
                 (Some(linking_samples), Some(THIN_LINK), ThresholdOrigin::Definition)
+            }
+            Self::ThinZero { effective_samples } => {
+                (Some(effective_samples), Some(FEWEST_EFFECTIVE_SAMPLES), ThresholdOrigin::Definition)
             }
             Self::UnsampledBins { bins, .. } | Self::ErrorNotDetermined { bins, .. } => {
                 (Some(bins as f64), None, ThresholdOrigin::Occurrence)
@@ -190,7 +250,18 @@ impl Finding {
             Self::NoErrorSupport { window, samples } => {
                 format!("the {samples} samples of window `{window}` support no error: too few, or all alike")
             }
-            Self::NotLinked { below, above, range } => {
+            Self::NeverSettles { window } => format!("window `{window}` drifts to its end"),
+            Self::UnsettledStart { window, samples, gain } => format!(
+                "window `{window}` begins with {samples} samples that had not settled; without them it holds {gain:.1} times as many independent ones"
+            ),
+            Self::ErrorsDisagree { ratio, place } => {
+                format!("resampling the runs gives {ratio:.2} times the standard error {place}")
+            }
+            Self::ReplicasDisagree { ratio, position } => format!(
+                "replicas of the same windows differ by {ratio:.1} times what their own fluctuations explain, most of all at {}",
+                short(*position)
+            ),
+            Self::NotLinked { below, above, range, .. } => {
                 let where_to = match range {
                     Some((from, to)) => format!("the axis is not covered between {} and {}", short(*from), short(*to)),
                     None => "they overlap by less than one independent sample".to_owned(),
@@ -203,6 +274,9 @@ impl Finding {
             Self::UnsampledBins { from, to, bins } => {
                 format!("no sample lies between {} and {} ({})", short(*from), short(*to), counted(*bins as u64, "bin"))
             }
+            Self::ThinZero { effective_samples } => format!(
+                "the zero of the profile holds only some {effective_samples:.1} independent samples, so no bin has an error"
+            ),
             Self::ErrorNotDetermined { bins, of } => {
                 format!("{bins} of {of} bins have a free energy but no error that the data support")
             }
@@ -221,13 +295,29 @@ impl Finding {
             }
             Self::FewEffectiveSamples { .. } => "run the window longer; its errors are widened until then",
             Self::NoErrorSupport { .. } => {
-                "check the column and the run; a coordinate that never moves, or a few frames, cannot show their own spread"
+                "check the column and the run, or exclude the window; while it takes part, no number has an error"
             }
-            Self::NotLinked { .. } => {
+            Self::NeverSettles { .. } => {
+                "run the window longer, or start it from a better place; no error covers a drift that goes on"
+            }
+            Self::UnsettledStart { .. } => {
+                "leave the beginning out: `discard = { automatic = true }`, or a time of your own"
+            }
+            Self::ErrorsDisagree { .. } => {
+                "trust the larger error, and look at the windows that reach there: few samples, or two states seldom left"
+            }
+            Self::ReplicasDisagree { .. } => {
+                "motions slower than the runs keep the starts apart: run longer, or restrain them; the quoted errors are too small"
+            }
+            Self::NotLinked { gaps_allowed: true, .. } => {
+                "nothing, if the gap is meant; each group has a zero of its own, and nothing joins them"
+            }
+            Self::NotLinked { gaps_allowed: false, .. } => {
                 "add a window between the two, or allow gaps: each group is then solved with a zero of its own"
             }
             Self::ThinLink { .. } => "add a window between the two, or run both longer",
             Self::UnsampledBins { .. } => "add a window there, or narrow the range of the profile",
+            Self::ThinZero { .. } => "set `zero` to a place that was sampled well, or run the windows there longer",
             Self::ErrorNotDetermined { .. } => {
                 "run the windows that reach there longer, widen the bins, or narrow the range of the profile"
             }

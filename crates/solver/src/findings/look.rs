@@ -2,7 +2,7 @@
 
 use super::finding::{FEW_EFFECTIVE_SAMPLES, Finding, THIN_LINK};
 use crate::ensemble::Ensemble;
-use crate::profile::{BinStatus, Profile};
+use crate::profile::{BinStatus, FEWEST_EFFECTIVE_SAMPLES, Profile};
 use crate::solve::Links;
 
 /// Windows with few effective samples, or with none that could be told apart.
@@ -24,9 +24,9 @@ pub fn look_at_ensemble(ensemble: &Ensemble) -> Vec<Finding> {
     findings
 }
 
-/// Stretches that link nothing, and the link by which everything hangs if it is thin.
+/// Stretches that link nothing, and thin links. `gaps_allowed`: the groups are to be solved apart.
 #[must_use]
-pub fn look_at_links(ensemble: &Ensemble, links: &Links) -> Vec<Finding> {
+pub fn look_at_links(ensemble: &Ensemble, links: &Links, gaps_allowed: bool) -> Vec<Finding> {
     let name = |k: usize| ensemble.windows[k].name.clone();
     let mut findings: Vec<Finding> = links
         .uncovered
@@ -35,6 +35,7 @@ pub fn look_at_links(ensemble: &Ensemble, links: &Links) -> Vec<Finding> {
             below: name(stretch.below),
             above: name(stretch.above),
             range: stretch.range,
+            gaps_allowed,
         })
         .collect();
     findings.extend(links.tree.iter().filter(|link| link.linking_samples < THIN_LINK).map(|link| Finding::ThinLink {
@@ -57,6 +58,10 @@ pub fn look_at_profile(profile: &Profile) -> Vec<Finding> {
             bins: length,
         });
         rest = &rest[start + length..];
+    }
+    if profile.zero_effective_samples < FEWEST_EFFECTIVE_SAMPLES {
+        findings.push(Finding::ThinZero { effective_samples: profile.zero_effective_samples });
+        return findings;
     }
     let without_error = profile.bins.iter().filter(|bin| bin.status == BinStatus::NotDetermined).count();
     if without_error > 0 {

@@ -5,7 +5,9 @@
 mod catalog;
 mod finding;
 mod look;
+mod look_at_errors;
 
 pub use catalog::{Severity, ThresholdOrigin};
 pub use finding::{Finding, FindingRecord};
 pub use look::{look_at_ensemble, look_at_links, look_at_profile};
+pub use look_at_errors::{look_at_bootstrap, look_at_replicas};

@@ -9,6 +9,7 @@ mod streams;
 mod uncertainty;
 
 pub use quantity::{Direct, Quantity};
+pub(crate) use uncertainty::quantile;
 pub use uncertainty::{FEW_BATCHES, FEW_DEGREES, Support, TOO_FEW_BATCHES, TOO_FEW_DEGREES, Uncertainty};
 
 use crate::ensemble::Ensemble;
@@ -28,6 +29,15 @@ pub struct Influence {
     log_denominators: Vec<f64>,
     /// Windows with weight on each point and their parts Mₖ wₖ of it.
     answered: Vec<Vec<(u32, f64)>>,
+}
+
+/// What one replica says of a quantity.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct ReplicaMean {
+    /// Samples in it.
+    pub n_samples: f64,
+    /// Mean of its samples' influences.
+    pub influence: f64,
 }
 
 /// Deviations of a quantity's batch influences from their means, scaled so that products add up to covariances.
@@ -97,23 +107,45 @@ impl Influence {
     /// Deviations of a quantity relative to the gauge window. Cost: one pass over the batches.
     #[must_use]
     pub fn deviations(&self, quantity: &Quantity) -> Deviations {
+        let pull = self.pull(quantity);
+        Deviations(self.streams.iter().flat_map(|stream| stream.deviations(quantity, &pull)).collect())
+    }
+
+    /// Mean influence on a quantity over each replica that supports an error, up to a constant for each window, in the order of the
+    /// ensemble's streams.
+    pub(crate) fn replica_means(&self, quantity: &Quantity) -> Vec<ReplicaMean> {
+        let pull = self.pull(quantity);
+        let mean = |stream: &StreamBatches| ReplicaMean {
+            n_samples: stream.n_samples(),
+            influence: stream.mean(quantity, &pull),
+        };
+        self.streams.iter().map(mean).collect()
+    }
+
+    /// H⁻¹ ∂Q/∂f, 0 in the gauge window.
+    fn pull(&self, quantity: &Quantity) -> Vec<f64> {
         let mut free = quantity.free_energy_gradient.clone();
         free.remove(self.gauge);
         let mut pull: Vec<f64> = self.factor.solve(&DVector::from_vec(free)).iter().copied().collect();
         pull.insert(self.gauge, 0.0);
-        Deviations(self.streams.iter().flat_map(|stream| stream.deviations(quantity, &pull)).collect())
+        pull
+    }
+
+    /// Number of batches and part of the variance of each replica that supports an error, in the order of the ensemble's streams.
+    pub(crate) fn parts(&self, deviations: &Deviations) -> Vec<(usize, f64)> {
+        let mut rest = deviations.0.as_slice();
+        let part = |stream: &StreamBatches| {
+            let (own, later) = rest.split_at(stream.n_batches());
+            rest = later;
+            (stream.n_batches(), own.iter().map(|z| z * z).sum())
+        };
+        self.streams.iter().map(part).collect()
     }
 
     /// Standard error, degrees of freedom and interval of a quantity with the given deviations.
     #[must_use]
     pub fn uncertainty(&self, deviations: &Deviations) -> Uncertainty {
-        let mut rest = deviations.0.as_slice();
-        let parts = self.streams.iter().map(|stream| {
-            let (own, later) = rest.split_at(stream.n_batches());
-            rest = later;
-            (stream.n_batches(), own.iter().map(|z| z * z).sum())
-        });
-        Uncertainty::from_parts(parts, self.unsupported.is_empty())
+        Uncertainty::from_parts(self.parts(deviations).into_iter(), self.unsupported.is_empty())
     }
 
     /// Covariance matrix of quantities with the given deviations.

@@ -75,19 +75,33 @@ impl StreamBatches {
         self.batches.len()
     }
 
-    /// Scaled deviations of the batch means of φ(x) = q(x) − Σⱼ pullⱼ Mⱼ wⱼ(x); what φ has besides is constant along a window.
+    pub(super) fn n_samples(&self) -> f64 {
+        self.batches.iter().map(|batch| batch.n_samples).sum()
+    }
+
+    /// Scaled deviations of the batch means of φ.
     pub(super) fn deviations(&self, quantity: &Quantity, pull: &[f64]) -> Vec<f64> {
-        let means: Vec<f64> = self
-            .batches
-            .iter()
-            .map(|batch| {
-                let indirect: f64 = self.present.iter().zip(&batch.answered).map(|(&k, s)| pull[k as usize] * s).sum();
-                batch.direct_sum(quantity) / batch.n_samples - indirect
-            })
-            .collect();
-        let total: f64 = self.batches.iter().map(|batch| batch.n_samples).sum();
-        let center = self.batches.iter().zip(&means).map(|(batch, y)| batch.n_samples * y).sum::<f64>() / total;
+        let means = self.means(quantity, pull);
+        let center = self.mean_of(&means);
         self.batches.iter().zip(&means).map(|(batch, y)| self.scale * batch.n_samples.sqrt() * (y - center)).collect()
+    }
+
+    /// Mean of φ over the replica.
+    pub(super) fn mean(&self, quantity: &Quantity, pull: &[f64]) -> f64 {
+        self.mean_of(&self.means(quantity, pull))
+    }
+
+    /// Batch means of φ(x) = q(x) − Σⱼ pullⱼ Mⱼ wⱼ(x); what φ has besides is constant along a window.
+    fn means(&self, quantity: &Quantity, pull: &[f64]) -> Vec<f64> {
+        let mean = |batch: &Batch| {
+            let indirect: f64 = self.present.iter().zip(&batch.answered).map(|(&k, s)| pull[k as usize] * s).sum();
+            batch.direct_sum(quantity) / batch.n_samples - indirect
+        };
+        self.batches.iter().map(mean).collect()
+    }
+
+    fn mean_of(&self, batch_means: &[f64]) -> f64 {
+        self.batches.iter().zip(batch_means).map(|(batch, y)| batch.n_samples * y).sum::<f64>() / self.n_samples()
     }
 }
 

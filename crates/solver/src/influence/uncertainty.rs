@@ -48,7 +48,11 @@ impl Uncertainty {
         }
         let degrees_of_freedom = if squares > 0.0 { (variance * variance / squares).max(1.0) } else { 1.0 };
         let mean_batches = if variance > 0.0 { weighted_batches / variance } else { 0.0 };
-        let standard_error = variance.sqrt();
+        Self::new(variance.sqrt(), degrees_of_freedom, mean_batches, supported)
+    }
+
+    /// From a standard error that rests on a mean number of batches; `supported` is false if some replica could give none.
+    pub(crate) fn new(standard_error: f64, degrees_of_freedom: f64, mean_batches: f64, supported: bool) -> Self {
         let has_error = supported && standard_error.is_finite() && standard_error > 0.0;
         let support = if has_error && mean_batches >= FEW_BATCHES && degrees_of_freedom >= FEW_DEGREES {
             Support::Determined
@@ -60,13 +64,13 @@ impl Uncertainty {
         Self {
             standard_error,
             degrees_of_freedom,
-            half_width_95: quantile_975(degrees_of_freedom) * standard_error,
+            half_width_95: quantile(0.975, degrees_of_freedom) * standard_error,
             support,
         }
     }
 }
 
-/// 97.5 % quantile of Student's t; infinite if the degrees of freedom are not positive.
-fn quantile_975(degrees_of_freedom: f64) -> f64 {
-    StudentsT::new(0.0, 1.0, degrees_of_freedom).map_or(f64::INFINITY, |t| t.inverse_cdf(0.975))
+/// Quantile of Student's t; infinite if the degrees of freedom are not positive. `probability` is between 0 and 1.
+pub(crate) fn quantile(probability: f64, degrees_of_freedom: f64) -> f64 {
+    StudentsT::new(0.0, 1.0, degrees_of_freedom).map_or(f64::INFINITY, |t| t.inverse_cdf(probability))
 }

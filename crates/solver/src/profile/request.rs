@@ -7,7 +7,8 @@ use std::fmt;
 #[derive(Debug, Clone, Copy, PartialEq, Serialize)]
 #[serde(rename_all = "kebab-case", tag = "kind")]
 pub enum Zero {
-    /// The lowest bin. Errors are those of differences from that bin; that it was chosen by its value is not in them.
+    /// The lowest bin among those with samples enough for an error. Errors are those of differences from that bin; that it was chosen by
+    /// its value is not in them.
     Minimum,
     /// The bin that holds a position (in the axis' unit).
     Position {

@@ -2,7 +2,8 @@
 
 use super::request::{ProfileError, ProfileRequest, Zero};
 use super::support::{BinSupport, FEWEST_EFFECTIVE_SAMPLES};
-use super::zero::{LogDensity, ZeroPoint};
+use super::zero::{LogDensity, ZeroPoint, stretches_of_range};
+use crate::condense::BinGrid;
 use crate::ensemble::Ensemble;
 use crate::influence::{Deviations, Influence, Support, Uncertainty};
 use nalgebra::DMatrix;
@@ -78,6 +79,8 @@ pub struct Profile {
     pub zero: Zero,
     /// Middle of the bin that is zero, in the axis' unit; `None` if a range is.
     pub zero_position: Option<f64>,
+    /// Effective samples in the zero; below [`FEWEST_EFFECTIVE_SAMPLES`] no bin has an error.
+    pub zero_effective_samples: f64,
     #[serde(skip)]
     deviations: Vec<Option<Deviations>>,
 }
@@ -92,20 +95,17 @@ impl Profile {
         let numbers: Vec<i64> = bins.clone().collect();
         let densities: Vec<Option<LogDensity>> =
             numbers.par_iter().map(|&bin| LogDensity::over(ensemble, influence, &[bin..=bin])).collect();
-        let sampled = numbers.iter().zip(&densities).filter_map(|(bin, density)| Some((*bin, density.as_ref()?.value)));
-        let densest = sampled
-            .reduce(|best, next| if next.1 > best.1 { next } else { best })
-            .ok_or(ProfileError::NothingSampled)?
-            .0;
+        let support = BinSupport::of_bins(ensemble, &bins);
+        let densest = densest_bin(&numbers, &densities, &support).ok_or(ProfileError::NothingSampled)?;
         let zero = ZeroPoint::find(ensemble, influence, request.zero, densest)?;
 
         let mut profile = Self {
             bins: Vec::with_capacity(numbers.len()),
             zero: request.zero,
             zero_position: zero.bin.map(|bin| ensemble.bins.center(bin)),
+            zero_effective_samples: zero.effective_samples,
             deviations: Vec::with_capacity(numbers.len()),
         };
-        let support = BinSupport::of_bins(ensemble, &bins);
         for ((&number, density), support) in numbers.iter().zip(densities).zip(support) {
             let deviations = density.as_ref().map(|density| density.deviations.minus(&zero.density.deviations));
             let uncertainty = deviations.as_ref().map(|deviations| influence.uncertainty(deviations));
@@ -126,6 +126,28 @@ impl Profile {
         Ok(profile)
     }
 
+    /// The same profile with errors from elsewhere, one a bin; where there is none the bin's error is not determined.
+    #[must_use]
+    pub fn with_errors(mut self, errors: &[Option<Uncertainty>]) -> Self {
+        for (bin, error) in self.bins.iter_mut().zip(errors) {
+            if bin.uncertainty.is_none() {
+                continue;
+            }
+            bin.uncertainty = error.filter(|error| error.support != Support::NotDetermined);
+            bin.status = match bin.uncertainty.map(|error| error.support) {
+                Some(Support::Determined) => BinStatus::Determined,
+                Some(Support::Provisional) => BinStatus::Provisional,
+                Some(Support::NotDetermined) | None => BinStatus::NotDetermined,
+            };
+        }
+        for (bin, deviations) in self.bins.iter().zip(&mut self.deviations) {
+            if bin.uncertainty.is_none() {
+                *deviations = None;
+            }
+        }
+        self
+    }
+
     /// The profile without unsampled bins at its ends.
     #[must_use]
     pub fn trimmed(mut self) -> Self {
@@ -137,6 +159,20 @@ impl Profile {
         self
     }
 
+    /// How the free energy of a bin deviates; `None` where it has no error.
+    pub(crate) fn deviations(&self, bin: usize) -> Option<&Deviations> {
+        self.deviations.get(bin)?.as_ref()
+    }
+
+    /// The stretches of bins over whose mean density the profile is zero.
+    pub(crate) fn zero_stretches(&self, bins: &BinGrid) -> Option<Vec<RangeInclusive<i64>>> {
+        match (self.zero_position, self.zero) {
+            (Some(position), _) => bins.bin_of(position).map(|bin| vec![bin..=bin]),
+            (None, Zero::Range { from, to }) => stretches_of_range(bins, from, to),
+            (None, Zero::Minimum | Zero::Position { .. }) => None,
+        }
+    }
+
     /// Numbers of the bins that have an error, and the covariance matrix of their free energies in kT².
     #[must_use]
     pub fn covariance(&self, influence: &Influence) -> (Vec<usize>, DMatrix<f64>) {
@@ -144,6 +180,20 @@ impl Profile {
         let deviations: Vec<Deviations> = self.deviations.iter().flatten().cloned().collect();
         (with_error, influence.covariance(&deviations))
     }
+}
+
+/// The bin of the lowest free energy; one with too few samples for an error serves only where there is no other.
+fn densest_bin(numbers: &[i64], densities: &[Option<LogDensity>], support: &[BinSupport]) -> Option<i64> {
+    let sampled =
+        || numbers.iter().zip(densities).zip(support).filter_map(|((n, d), s)| Some((*n, d.as_ref()?.value, s)));
+    let densest = |best: (i64, f64), next: (i64, f64)| if next.1 > best.1 { next } else { best };
+    let supported = sampled().filter(|(_, _, support)| support.effective_samples >= FEWEST_EFFECTIVE_SAMPLES);
+    let bin_and_density = |(n, d, _): (i64, f64, &BinSupport)| (n, d);
+    supported
+        .map(bin_and_density)
+        .reduce(densest)
+        .or_else(|| sampled().map(bin_and_density).reduce(densest))
+        .map(|(number, _)| number)
 }
 
 fn status(number: i64, uncertainty: Option<&Uncertainty>, support: &BinSupport, zero: &ZeroPoint) -> BinStatus {

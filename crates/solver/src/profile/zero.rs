@@ -2,6 +2,7 @@
 
 use super::request::{ProfileError, Zero};
 use super::support::BinSupport;
+use crate::condense::BinGrid;
 use crate::ensemble::Ensemble;
 use crate::influence::{Deviations, Influence};
 use crate::quantities::log_weight_of_bins;
@@ -45,8 +46,7 @@ impl ZeroPoint {
                 (vec![bin..=bin], Some(bin))
             }
             Zero::Range { from, to } => {
-                let (first, n_bins) = ensemble.bins.touched_by(from, to).ok_or(ProfileError::ZeroRange { from, to })?;
-                (in_first_period(first, i64::from(n_bins), ensemble.bins.n_bins_in_period()), None)
+                (stretches_of_range(&ensemble.bins, from, to).ok_or(ProfileError::ZeroRange { from, to })?, None)
             }
         };
         if let Some(empty) = stretches.iter().cloned().flatten().find(|&bin| ensemble.points.in_bin(bin).is_empty()) {
@@ -55,6 +55,12 @@ impl ZeroPoint {
         let density = LogDensity::over(ensemble, influence, &stretches).ok_or(ProfileError::NothingSampled)?;
         Ok(Self { density, bin, effective_samples: BinSupport::effective_samples_in(ensemble, &stretches) })
     }
+}
+
+/// The bins that a range touches as one or two stretches; `None` for a range that is empty, out of reach or longer than the period.
+pub(super) fn stretches_of_range(bins: &BinGrid, from: f64, to: f64) -> Option<Vec<RangeInclusive<i64>>> {
+    let (first, n_bins) = bins.touched_by(from, to)?;
+    Some(in_first_period(first, i64::from(n_bins), bins.n_bins_in_period()))
 }
 
 /// A stretch of bins as one or two increasing stretches of the first period.

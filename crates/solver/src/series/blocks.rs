@@ -11,10 +11,10 @@ pub const MAX_BLOCKS: usize = 512;
 /// Block lengths are powers of two counted from the first sample, so the result does not depend on how the samples were delivered.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct BlockMeans {
-    n_channels: usize,
+    pub(super) n_channels: usize,
     block_length: u64,
     /// Complete blocks, one row of `n_channels` means a block.
-    means: Vec<f64>,
+    pub(super) means: Vec<f64>,
     partial_sums: Vec<f64>,
     partial_count: u64,
 }

@@ -19,8 +19,8 @@ pub struct LevelSums {
     pub minimum: f64,
     /// Largest value, as a difference from the reference.
     pub maximum: f64,
-    first: f64,
-    last: f64,
+    pub(super) first: f64,
+    pub(super) last: f64,
     /// The earlier half of a pair that waits for its partner.
     waiting: Option<f64>,
 }
@@ -56,6 +56,19 @@ impl LevelSums {
         pair
     }
 
+    /// Variance of the values at this level with the divisor n, their number; 0 for a single value.
+    #[must_use]
+    pub fn population_variance(&self) -> f64 {
+        self.centered_sum_of_squares() / self.count as f64
+    }
+
+    /// Σ (yₜ − ȳ)(yₜ₊₁ − ȳ).
+    pub(super) fn centered_lag_products(&self) -> f64 {
+        let mean = self.sum / self.count as f64;
+        self.sum_of_lag_products - mean * (2.0 * self.sum - self.first - self.last)
+            + (self.count - 1) as f64 * mean * mean
+    }
+
     fn centered_sum_of_squares(&self) -> f64 {
         (self.sum_of_squares - self.sum * (self.sum / self.count as f64)).max(0.0)
     }
@@ -77,8 +90,8 @@ impl LevelSums {
 /// ```
 #[derive(Debug, Clone, PartialEq, Default, Serialize)]
 pub struct Cascade {
-    reference: f64,
-    levels: Vec<LevelSums>,
+    pub(super) reference: f64,
+    pub(super) levels: Vec<LevelSums>,
 }
 
 impl Cascade {
@@ -87,7 +100,12 @@ impl Cascade {
         if self.levels.is_empty() {
             self.reference = value;
         }
-        let mut carried = Some(value - self.reference);
+        self.push_difference(value - self.reference);
+    }
+
+    /// Takes one difference from the reference in.
+    pub(super) fn push_difference(&mut self, difference: f64) {
+        let mut carried = Some(difference);
         let mut level = 0;
         while let Some(y) = carried {
             carried = if let Some(sums) = self.levels.get_mut(level) {
@@ -146,9 +164,6 @@ impl Cascade {
         if sums.count < 2 || spread <= 0.0 {
             return None;
         }
-        let mean = sums.sum / sums.count as f64;
-        let products = sums.sum_of_lag_products - mean * (2.0 * sums.sum - sums.first - sums.last)
-            + (sums.count - 1) as f64 * mean * mean;
-        Some(products / spread)
+        Some(sums.centered_lag_products() / spread)
     }
 }

@@ -1,9 +1,8 @@
 //! Correlation along a series, read off its block means.
 
+use super::Autocorrelation;
+use super::sequence::monotone_pairs;
 use serde::Serialize;
-
-/// Relative spread of block means that is taken for rounding: sums of up to 2³⁰ equal numbers differ by less in their order.
-const CONSTANT_WITHIN: f64 = 1e-12;
 
 /// Mean lag and inefficiency of a series in units of its blocks.
 ///
@@ -27,42 +26,20 @@ pub struct MeanLag {
 }
 
 impl MeanLag {
-    /// Reads the correlation off `means` (B values in the order of time). Cost B² at most, with B ≤ 512.
+    /// Reads the correlation off `means` (B values in the order of time). Cost B log B.
     ///
     /// `None` if there are fewer than two blocks or all means are equal: nothing can then be said about correlation.
     #[must_use]
     pub fn of_block_means(means: &[f64]) -> Option<Self> {
-        let n_blocks = means.len();
-        if n_blocks < 2 {
-            return None;
-        }
-        let b = n_blocks as f64;
-        let mean = means.iter().sum::<f64>() / b;
-        let centered: Vec<f64> = means.iter().map(|x| x - mean).collect();
-        let variance = centered.iter().map(|x| x * x).sum::<f64>() / b;
-        let scale = means.iter().fold(0.0_f64, |largest, x| largest.max(x.abs()));
-        if variance.sqrt() <= CONSTANT_WITHIN * scale {
-            return None;
-        }
-        let rho = |lag: usize| {
-            let products: f64 = centered.iter().zip(&centered[lag..]).map(|(x, y)| x * y).sum();
-            products / (b * variance)
-        };
-
-        let mut smallest = f64::INFINITY;
-        let mut sum = 0.0;
-        let mut lag_sum = 0.0;
-        for m in 0..n_blocks / 2 {
-            let pair = if m == 0 { 1.0 + rho(1) } else { rho(2 * m) + rho(2 * m + 1) };
-            if pair <= 0.0 {
-                break;
-            }
-            smallest = pair.min(smallest);
-            sum += smallest;
-            lag_sum += if m == 0 { smallest - 1.0 } else { (2.0 * m as f64 + 0.5) * smallest };
-        }
-        if rho(1) < 1.0 / b.sqrt() {
+        let b = means.len() as f64;
+        let Autocorrelation { variance, rho } = Autocorrelation::of(means)?;
+        if rho[1] < 1.0 / b.sqrt() {
             return Some(Self { mean_lag: 0.0, block_inefficiency: 1.0, block_variance: variance });
+        }
+        let (mut sum, mut lag_sum) = (0.0, 0.0);
+        for (m, pair) in monotone_pairs(&rho).enumerate() {
+            sum += pair;
+            lag_sum += if m == 0 { pair - 1.0 } else { (2.0 * m as f64 + 0.5) * pair };
         }
         let block_inefficiency = 2.0 * sum - 1.0;
         let mean_lag = (2.0 * lag_sum / block_inefficiency.max(1.0)).clamp(0.0, b / 2.0);

@@ -50,7 +50,7 @@ pub(super) fn without(values: &[f64], gauge: usize) -> Vec<f64> {
 }
 
 /// Largest absolute value; NaN if any value is.
-pub(super) fn largest(values: &[f64]) -> f64 {
+pub(crate) fn largest(values: &[f64]) -> f64 {
     values.iter().fold(0.0, |largest: f64, x| if largest.is_nan() || x.abs() <= largest { largest } else { x.abs() })
 }
 

@@ -25,8 +25,8 @@ mod solution;
 mod trust_region;
 mod uncovered;
 
-pub(crate) use certify::factorized;
 pub use certify::{Certificate, certify};
+pub(crate) use certify::{factorized, largest};
 pub(crate) use likelihood::Likelihood;
 pub use links::{LEAST_LINK, Link, Links};
 pub use maximize::{SolveError, solve};

@@ -1,10 +1,11 @@
 //! Damped Newton steps: the default.
 
-use super::certify::{largest, newton_step};
+use super::certify::{factorized, largest, newton_step, without};
 use super::likelihood::Likelihood;
 use super::method::{Progress, SolveOptions};
 use super::minimizer::{Minimized, Minimizer, Stopped};
 use crate::ensemble::Ensemble;
+use nalgebra::{DMatrix, DVector};
 use std::ops::ControlFlow;
 
 /// Change of any f, in kT, beyond which the shares are looked up again.
@@ -30,7 +31,8 @@ impl Minimizer for Newton {
         let mut delta = vec![0.0; f.len()];
         let limit = options.max_iterations.unwrap_or(200);
         for iteration in 1..=limit {
-            let Some((mut step, _)) = newton_step(&likelihood, &delta, gauge) else {
+            let newton = newton_step(&likelihood, &delta, gauge).map(|(step, _)| step);
+            let Some(mut step) = newton.or_else(|| shifted_step(&likelihood, &delta, gauge)) else {
                 return Ok(Minimized { f, iterations: iteration });
             };
             let length = largest(&step);
@@ -53,6 +55,21 @@ impl Minimizer for Newton {
         }
         Ok(Minimized { f, iterations: limit })
     }
+}
+
+/// A step where rounding has left the Hessian without curvature in some direction: the least of some multiples of the identity is added
+/// that gives it one (Levenberg 1944). `None` if none does.
+fn shifted_step(likelihood: &Likelihood<'_>, delta: &[f64], gauge: usize) -> Option<Vec<f64>> {
+    let gradient = DVector::from_vec(without(&likelihood.evaluate(delta).gradient, gauge));
+    let hessian = likelihood.hessian(delta);
+    let scale = hessian.diagonal().amax();
+    let solved = (1..=12).find_map(|power| {
+        let shift = DMatrix::identity(hessian.nrows(), hessian.ncols()) * (scale * 1e-14 * 10.0_f64.powi(power));
+        factorized(&hessian + shift, gauge).map(|factor| factor.solve(&gradient))
+    })?;
+    let mut step: Vec<f64> = solved.iter().map(|x| -x).collect();
+    step.insert(gauge, 0.0);
+    Some(step)
 }
 
 /// Shortens a step to the longest that is allowed, and returns the part of it that lowers the likelihood.

@@ -7,8 +7,11 @@ use crate::ensemble::{Ensemble, Window};
 pub struct PairSolution {
     /// f_j − f_i in kT.
     pub difference: f64,
-    /// Effective number of samples of either window that the other answers for,
-    /// Σ_{x in i} share_j/gᵢ + Σ_{x in j} share_i/gⱼ; below 1 the windows are not linked.
+    /// Effective number of samples of either window that the other answers for, Σ_{x in i} share_j/gᵢ + Σ_{x in j} share_i/gⱼ; below 1
+    /// the windows are not linked.
+    ///
+    /// No more than four times Σ share_i share_j/g, which a healthy pair exceeds: where the samples belong wholly to each other's bias,
+    /// because files were mixed up, say, any difference meets the equation and none of them links anything.
     pub linking_samples: f64,
 }
 
@@ -43,9 +46,12 @@ pub fn solve_pair(ensemble: &Ensemble, i: usize, j: usize) -> PairSolution {
         (first.weight * a + second.weight * b - second.total_weight(), first.weight * a_slope + second.weight * b_slope)
     };
     let difference = increasing_root(excess);
-    let linking_samples = answered_by_second(difference, &of_first).0 / first.samples_per_effective_sample()
-        + (second.n_samples as f64 - answered_by_second(difference, &of_second).0)
-            / second.samples_per_effective_sample();
+    let (g_first, g_second) = (first.samples_per_effective_sample(), second.samples_per_effective_sample());
+    let (of_first, slope_first) = answered_by_second(difference, &of_first);
+    let (of_second, slope_second) = answered_by_second(difference, &of_second);
+    let answered = of_first / g_first + (second.n_samples as f64 - of_second) / g_second;
+    let shared = slope_first / g_first + slope_second / g_second;
+    let linking_samples = answered.min(4.0 * shared);
     PairSolution { difference, linking_samples }
 }
 

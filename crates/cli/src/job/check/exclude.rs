@@ -7,8 +7,8 @@ use super::candidate::Candidate;
 use crate::job::mark::Typed;
 use crate::job::model::{Excluded, ExcludedReplica, Stretch};
 use crate::job::nearest::{list, nearest};
+use crate::job::number::readable;
 use crate::job::problem::{Problem, Problems};
-use crate::job::scalar::neat;
 use crate::job::typed::{TypedExclude, TypedStretch};
 
 /// Which candidates and replicas are left out.
@@ -140,8 +140,9 @@ fn check_stretch(typed: &TypedStretch, axes: &Axes, problems: &mut Problems) -> 
         problems.push(Problem::at(
             to.mark,
             format!(
-                "`exclude.stretches.to`: expected a stretch shorter than the period, {period}, found {}",
-                neat(length)
+                "`exclude.stretches.to`: expected a stretch shorter than the period, {}, found {}",
+                readable(period),
+                readable(length)
             ),
         ));
         return None;

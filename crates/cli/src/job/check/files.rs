@@ -1,13 +1,13 @@
 //! The files of the windows: patterns are expanded, missing files are named, no file counts twice.
 
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 use std::path::{Path, PathBuf};
 
 use glob::{MatchOptions, Pattern};
 
+use super::missing::{Missing, identity};
 use super::natural::natural_order;
 use crate::job::mark::{Mark, Typed};
-use crate::job::nearest::nearest;
 use crate::job::paths::JobFolder;
 use crate::job::problem::{Problem, Problems};
 
@@ -20,6 +20,9 @@ const MATCHING: MatchOptions =
 pub(super) struct Files<'a> {
     folder: &'a JobFolder,
     used: HashMap<PathBuf, Mark>,
+    /// Files of what is left out.
+    set_aside: HashSet<PathBuf>,
+    missing: Vec<Missing>,
     repeats: Vec<Repeat>,
 }
 
@@ -34,7 +37,7 @@ struct Repeat {
 impl<'a> Files<'a> {
     /// No file yet.
     pub fn new(folder: &'a JobFolder) -> Self {
-        Self { folder, used: HashMap::new(), repeats: Vec::new() }
+        Self { folder, used: HashMap::new(), set_aside: HashSet::new(), missing: Vec::new(), repeats: Vec::new() }
     }
 
     /// The files of one replica, in the order of its list; those of a pattern in natural order.
@@ -50,8 +53,21 @@ impl<'a> Files<'a> {
         segments
     }
 
-    /// Complains about the files that were used twice.
-    pub fn finish(self, problems: &mut Problems) {
+    /// Takes note of the files of a replica that is left out; whether they are there does not matter.
+    pub fn set_aside(&mut self, patterns: &[Typed<String>]) {
+        for pattern in patterns {
+            let path = self.folder.join(&pattern.value);
+            if path.exists() {
+                self.set_aside.insert(identity(&path));
+            } else {
+                let found = self.matches(&pattern.value).unwrap_or_default();
+                self.set_aside.extend(found.iter().map(|path| identity(path)));
+            }
+        }
+    }
+
+    /// Complains about the files that were used twice, and gives those that are missing and all that belong to a window.
+    pub fn finish(self, problems: &mut Problems) -> (Vec<Missing>, HashSet<PathBuf>) {
         for Repeat { first, again, names } in self.repeats {
             let Some(name) = names.first() else { continue };
             let more = match names.len() - 1 {
@@ -62,11 +78,14 @@ impl<'a> Files<'a> {
                 .help("a file belongs to one replica of one window, and to one place in it");
             problems.push(if first == again { problem } else { problem.label(first, "first here") });
         }
+        let mut in_use = self.set_aside;
+        in_use.extend(self.used.into_keys());
+        (self.missing, in_use)
     }
 
     fn note_use(&mut self, path: &Path, mark: Mark) {
         // Two spellings or a link may mean the same file.
-        let identity = path.canonicalize().unwrap_or_else(|_| path.to_owned());
+        let identity = identity(path);
         let Some(&first) = self.used.get(&identity) else {
             self.used.insert(identity, mark);
             return;
@@ -78,7 +97,7 @@ impl<'a> Files<'a> {
         }
     }
 
-    fn expand(&self, pattern: &Typed<String>, problems: &mut Problems) -> Vec<PathBuf> {
+    fn expand(&mut self, pattern: &Typed<String>, problems: &mut Problems) -> Vec<PathBuf> {
         let path = self.folder.join(&pattern.value);
         if path.is_dir() {
             problems.push(
@@ -91,11 +110,9 @@ impl<'a> Files<'a> {
             return vec![path];
         }
         if !pattern.value.contains(['*', '?', '[']) {
-            problems.push(
-                Problem::at(pattern.mark, format!("`files`: expected a file, found nothing at `{}`", pattern.value))
-                    .suggest(neighbor(&path, &pattern.value).as_deref())
-                    .help("paths are relative to the folder of the job"),
-            );
+            let problem =
+                Problem::at(pattern.mark, format!("`files`: expected a file, found nothing at `{}`", pattern.value));
+            self.missing.push(Missing::new(problem, path, &pattern.value));
             return Vec::new();
         }
         match self.matches(&pattern.value) {
@@ -139,18 +156,4 @@ impl<'a> Files<'a> {
         found.sort_by(|a, b| natural_order(&a.to_string_lossy(), &b.to_string_lossy()));
         Ok(found)
     }
-}
-
-/// A file of a similar name beside the one that is missing, as the job would write it.
-pub(super) fn neighbor(path: &Path, typed: &str) -> Option<String> {
-    let wanted = path.file_name()?.to_str()?;
-    let folder = match path.parent()? {
-        folder if folder.as_os_str().is_empty() => Path::new("."),
-        folder => folder,
-    };
-    let mut names: Vec<String> =
-        folder.read_dir().ok()?.filter_map(|entry| entry.ok()?.file_name().into_string().ok()).collect();
-    names.sort_by(|a, b| natural_order(a, b));
-    let near = nearest(wanted, names.iter().map(String::as_str))?;
-    Some(format!("{}{near}", typed.strip_suffix(wanted)?))
 }

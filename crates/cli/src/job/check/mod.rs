@@ -7,13 +7,16 @@ mod candidate;
 mod digest;
 mod exclude;
 mod files;
+mod fitting_bins;
 mod kind;
+mod missing;
 mod natural;
 mod output;
 mod profile;
 mod rows;
 mod series;
 mod shapes;
+mod tabulated;
 mod term;
 mod term_inputs;
 mod term_values;
@@ -24,6 +27,7 @@ mod windows;
 use std::path::Path;
 
 use spandrel_bias::units::{EnergyUnit, Temperature};
+use spandrel_solver::bootstrap::BootstrapOptions;
 use spandrel_solver::condense::DEFAULT_CELL_ERROR;
 use spandrel_solver::solve::SolveOptions;
 
@@ -35,10 +39,10 @@ use self::exclude::Exclusion;
 use self::files::Files;
 use self::series::Series;
 use self::windows::WindowChecks;
-use super::model::{AuxiliaryFile, AuxiliaryRole, Job, SolverSettings};
+use super::model::{AuxiliaryFile, AuxiliaryRole, ErrorMethod, ErrorSettings, Job, SolverSettings};
 use super::paths::JobFolder;
 use super::problem::{Problem, Problems};
-use super::typed::{TypedJob, TypedSolver};
+use super::typed::{TypedErrors, TypedJob, TypedSolver};
 
 /// Start of the random numbers where the job gives none.
 const DEFAULT_SEED: u64 = 1;
@@ -58,9 +62,10 @@ pub(super) fn check(typed: TypedJob, path: &Path, text: &str, problems: &mut Pro
         bytes: text.len() as u64,
         sha256: digest::sha256(text.as_bytes()),
     }];
+    let mut missing = Vec::new();
     let mut candidates: Vec<Candidate> = typed.windows.into_iter().map(Candidate::from_window).collect();
     if let Some(table) = &typed.window_table {
-        let (rows, file) = window_table::candidates(table, &folder, problems);
+        let (rows, file) = window_table::candidates(table, &folder, &mut missing, problems);
         candidates.extend(rows);
         auxiliary.extend(file);
     }
@@ -94,8 +99,13 @@ pub(super) fn check(typed: TypedJob, path: &Path, text: &str, problems: &mut Pro
             exclusion: &exclusion,
         };
         windows = checks.check(&candidates, &mut files, &mut tables, problems);
-        files.finish(problems);
-        auxiliary.extend(tables.into_files());
+        let (missing_series, mut in_use) = files.finish(problems);
+        let (missing_tables, table_files) = tables.finish();
+        missing.extend(missing_series);
+        missing.extend(missing_tables);
+        auxiliary.extend(table_files);
+        in_use.extend(auxiliary.iter().map(|file| missing::identity(&folder.join(&file.path))));
+        missing::report(missing, &in_use, problems);
     }
 
     let profile = typed.profile.as_ref().and_then(|typed| profile::check(typed, &axes, problems));
@@ -113,9 +123,20 @@ pub(super) fn check(typed: TypedJob, path: &Path, text: &str, problems: &mut Pro
         excluded: exclusion.excluded,
         profile: profile?,
         solver: solver_settings(&typed.solver),
+        errors: error_settings(&typed.errors),
         output_folder,
+        covariance: typed.output.covariance.unwrap_or(false),
         auxiliary,
     })
+}
+
+fn error_settings(typed: &TypedErrors) -> ErrorSettings {
+    let method = typed.method.unwrap_or_default();
+    let default = match method {
+        ErrorMethod::Influence => 0,
+        ErrorMethod::Bootstrap => BootstrapOptions::default().n_replicates,
+    };
+    ErrorSettings { method, bootstrap_replicates: typed.bootstrap_replicates.unwrap_or(default) }
 }
 
 fn solver_settings(typed: &TypedSolver) -> SolverSettings {

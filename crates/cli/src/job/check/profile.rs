@@ -4,14 +4,12 @@ use spandrel_solver::condense::BinGrid;
 use spandrel_solver::profile::{ProfileRequest, Zero};
 
 use super::axes::Axes;
+use super::fitting_bins::{WHOLE, fitting_bins, is_whole};
 use crate::job::mark::{Faulty, Mark, Optional, Typed};
 use crate::job::model::ProfileSettings;
+use crate::job::number::{readable, rough};
 use crate::job::problem::{Problem, Problems};
-use crate::job::scalar::neat;
 use crate::job::typed::{TypedBins, TypedProfile, TypedZero};
-
-/// A range counts as a whole number of bins within this fraction of it.
-const WHOLE: f64 = 1e-9;
 
 /// Most bins of a profile: more than any plot or file of one can use.
 const MOST_BINS: f64 = 1e6;
@@ -34,7 +32,8 @@ pub(super) fn check(typed: &TypedProfile, axes: &Axes, problems: &mut Problems) 
 
 /// A range whose ends are in the wrong order.
 pub(super) fn not_above(path: &str, from: Typed<f64>, to: Typed<f64>) -> Problem {
-    Problem::at(to.mark, format!("`{path}.to`: expected a number above `from`, {}, found {}", from.value, to.value))
+    let (from_text, to_text) = (readable(from.value), readable(to.value));
+    Problem::at(to.mark, format!("`{path}.to`: expected a number above `from`, {from_text}, found {to_text}"))
         .label(from.mark, "`from`")
 }
 
@@ -82,8 +81,8 @@ impl Bins<'_> {
                 to.mark,
                 format!(
                     "`profile.to`: expected a range of at most the period, {}, found {}",
-                    self.period.unwrap_or_default(),
-                    neat(length)
+                    readable(self.period.unwrap_or_default()),
+                    readable(length)
                 ),
             )
             .label(from.mark, "`from`")
@@ -112,25 +111,25 @@ impl Bins<'_> {
             problems.push(
                 Problem::at(
                     mark,
-                    format!("`profile`: expected at most {MOST_BINS} bins, found {:.0}", (to - from) / width),
+                    format!("`profile`: expected at most {MOST_BINS} bins, found {}", rough((to - from) / width)),
                 )
                 .help("widen the bins or narrow the range"),
             );
             return None;
         }
-        let whole = self.whole("range", from, to, width, mark, problems);
+        let length = to - from;
+        let whole = self.whole("range", length, length, width, mark, problems);
         // A part of a period can be a whole number of bins while the period is not.
         let closing = match self.period {
-            Some(period) if whole => self.whole("period", 0.0, period, width, mark, problems),
+            Some(period) if whole => self.whole("period", period, length, width, mark, problems),
             _ => true,
         };
         (whole && closing).then_some(width)
     }
 
-    fn whole(&self, what: &str, from: f64, to: f64, width: f64, mark: Mark, problems: &mut Problems) -> bool {
-        let length = to - from;
-        let number = (length / width).round().max(1.0);
-        if (number * width - length).abs() <= WHOLE * length {
+    /// Whether the `what` of this length is a whole number of bins.
+    fn whole(&self, what: &str, length: f64, range: f64, width: f64, mark: Mark, problems: &mut Problems) -> bool {
+        if is_whole(length, width) {
             return true;
         }
         let key = match self.typed.bins {
@@ -140,12 +139,12 @@ impl Bins<'_> {
         let mut problem = Problem::at(
             mark,
             format!(
-                "`profile.{key}`: expected a whole number of bins in the {what} of {}, found {:.4}",
-                neat(length),
-                length / width
+                "`profile.{key}`: expected a whole number of bins in the {what} of {}, found {}",
+                readable(length),
+                rough(length / width)
             ),
         )
-        .help(format!("a width of {} gives {number} bins", neat(length / number)));
+        .help(fitting_bins(range, self.period, width));
         if let (Ok(Some(from)), Ok(Some(to))) = (self.typed.from, self.typed.to) {
             problem = problem.label(from.mark, "").label(to.mark, "");
         }
@@ -176,7 +175,9 @@ impl Bins<'_> {
                     Problem::at(
                         typed.mark,
                         format!(
-                            "`profile.origin`: expected a whole number of bins from `from`, {from}, found {steps:.4}"
+                            "`profile.origin`: expected a whole number of bins from `from`, {}, found {}",
+                            readable(from),
+                            rough(steps)
                         ),
                     )
                     .help("leave it out; bins then begin at `from`"),
@@ -230,8 +231,10 @@ fn zero(typed: TypedZero, range: Option<(f64, f64)>, period: Option<f64>, proble
         Problem::at(
             position.mark,
             format!(
-                "`{path}`: expected a position in the range of the profile, {from} to {to}, found {}",
-                position.value
+                "`{path}`: expected a position in the range of the profile, {} to {}, found {}",
+                readable(from),
+                readable(to),
+                readable(position.value)
             ),
         )
     };

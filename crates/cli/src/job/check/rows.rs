@@ -23,17 +23,7 @@ impl Rows {
         let mut header: Option<(Mark, Vec<Typed<String>>)> = None;
         let mut rows = Vec::new();
         let mut faulty = false;
-        let mut start = 0;
-        for line in text.split_inclusive('\n') {
-            let line_start = start;
-            start += line.len();
-            let line = line.trim_start_matches('\u{feff}');
-            let line_start = line_start + (start - line_start - line.len());
-            let content = line.trim_end_matches(['\r', '\n']);
-            if content.trim().is_empty() || content.trim_start().starts_with('#') {
-                continue;
-            }
-            let mark = Mark::new(source, line_start..line_start + content.len());
+        for (mark, content) in lines(source, text) {
             let cells = match split(mark, content) {
                 Ok(cells) => cells,
                 Err(problem) => {
@@ -90,6 +80,38 @@ impl Rows {
             }
         }
     }
+}
+
+/// A complaint about a header without commas that has other separators, where more is asked for than the one column that it then has.
+pub(super) fn other_separator(source: SourceId, text: &str, asked: &[&str]) -> Option<Problem> {
+    let (mark, header) = lines(source, text).next()?;
+    if header.contains(',') || asked.contains(&header.trim()) {
+        return None;
+    }
+    let (what, sign) = [("semicolons", ';'), ("tabs", '\t'), ("blanks", ' ')]
+        .into_iter()
+        .find(|(_, sign)| header.trim().contains(*sign))?;
+    let mut advice = format!("write commas in place of the {what}, and points in place of any decimal commas");
+    if sign == ';' {
+        advice += "; several files of one row stay separated by `;`";
+    }
+    Some(
+        Problem::at(mark, format!("`window_table.file`: expected commas between the columns, found {what}"))
+            .help(advice),
+    )
+}
+
+/// The lines that are neither blank nor comments, with their places and without their ends.
+fn lines(source: SourceId, text: &str) -> impl Iterator<Item = (Mark, &str)> {
+    let mut next = 0;
+    text.split_inclusive('\n').filter_map(move |whole| {
+        let line = whole.trim_start_matches('\u{feff}');
+        let start = next + (whole.len() - line.len());
+        next += whole.len();
+        let content = line.trim_end_matches(['\r', '\n']);
+        let passed_by = content.trim().is_empty() || content.trim_start().starts_with('#');
+        (!passed_by).then(|| (Mark::new(source, start..start + content.len()), content))
+    })
 }
 
 /// The cells of one line.

@@ -84,9 +84,14 @@ impl Series {
         Selection { discard, stride: stride.unwrap_or(NonZeroU64::MIN) }
     }
 
+    /// Whether a window's replicas lose what they themselves show not to have settled.
+    pub fn automatic_start(&self, discard: Option<TypedDiscard>) -> bool {
+        matches!(discard.or(self.discard), Some(TypedDiscard::Automatic))
+    }
+
     fn discard(&self, typed: Option<TypedDiscard>, problems: &mut Problems) -> Discard {
         match typed {
-            None | Some(TypedDiscard::Faulty) => Discard::Nothing,
+            None | Some(TypedDiscard::Automatic | TypedDiscard::Faulty) => Discard::Nothing,
             Some(TypedDiscard::Frames(frames)) => Discard::Frames(frames),
             Some(TypedDiscard::Fraction(fraction)) => Discard::Fraction(fraction),
             Some(TypedDiscard::Time { time, unit, mark }) => {

@@ -5,6 +5,7 @@ use spandrel_bias::{FlatBottomed, Harmonic, Linear, OneSidedHarmonic, PeriodicHa
 
 use super::kind::Kind;
 use super::term::{TermAxis, TermReader};
+use crate::job::number::readable;
 use crate::job::problem::Problems;
 use crate::job::resolved::Setting;
 use crate::job::scalar::Allowed;
@@ -62,7 +63,8 @@ impl TermReader<'_> {
         if let Some(period) = period.filter(|period| width >= 0.5 * period) {
             if let Some(scalar) = half_width {
                 problems.push(scalar.complaint(&format!(
-                    "expected less than half the period of {period}, found {}",
+                    "expected less than half the period of {}, found {}",
+                    readable(period),
                     scalar.value.found()
                 )));
             }

@@ -7,8 +7,8 @@ use std::sync::Arc;
 
 use super::candidate::Candidate;
 use super::digest::sha256;
-use super::files::neighbor;
-use super::rows::Rows;
+use super::missing::Missing;
+use super::rows::{Rows, other_separator};
 use super::term_inputs::TermInputs;
 use crate::job::mark::{Mark, Source, Typed};
 use crate::job::model::{AuxiliaryFile, AuxiliaryRole};
@@ -21,16 +21,24 @@ use crate::job::typed::{BiasInput, TypedBias, TypedWindowTable};
 pub(super) fn candidates(
     typed: &TypedWindowTable,
     folder: &JobFolder,
+    missing: &mut Vec<Missing>,
     problems: &mut Problems,
 ) -> (Vec<Candidate>, Option<AuxiliaryFile>) {
     let Some(file) = &typed.file else {
         return (Vec::new(), None);
     };
-    let Some((text, auxiliary)) = read_text(file, folder, problems) else {
+    let Some((text, auxiliary)) = read_text(file, folder, missing, problems) else {
         return (Vec::new(), None);
     };
     let source =
         problems.add_source(Source { name: folder.join(&file.value).display().to_string(), text: Arc::clone(&text) });
+    let named = [&typed.files_column, &typed.name_column, &typed.replica_column].into_iter().flatten();
+    let asked: Vec<&str> =
+        named.chain(asked_columns(&typed.bias).map(|(_, asked)| asked)).map(|asked| asked.value.as_str()).collect();
+    if let Some(problem) = other_separator(source, &text, &asked) {
+        problems.push(problem.label(file.mark, "the table is asked for here"));
+        return (Vec::new(), Some(auxiliary));
+    }
     let rows = Rows::read(source, &text, problems);
     let Some(rows) = rows.filter(|rows| !rows.below.is_empty() || rows.faulty) else {
         problems.push(
@@ -46,20 +54,29 @@ pub(super) fn candidates(
     (columns.candidates(typed, &rows, problems), Some(auxiliary))
 }
 
-fn read_text(file: &Typed<String>, folder: &JobFolder, problems: &mut Problems) -> Option<(Arc<str>, AuxiliaryFile)> {
+fn read_text(
+    file: &Typed<String>,
+    folder: &JobFolder,
+    missing: &mut Vec<Missing>,
+    problems: &mut Problems,
+) -> Option<(Arc<str>, AuxiliaryFile)> {
     let path = folder.join(&file.value);
+    let expected = |found: String| Problem::at(file.mark, format!("`window_table.file`: expected a file{found}"));
     let bytes = match std::fs::read(&path) {
         Ok(bytes) => bytes,
+        Err(error) if error.kind() == ErrorKind::NotFound => {
+            let problem = expected(format!(", found nothing at `{}`", file.value));
+            missing.push(Missing::new(problem, path, &file.value));
+            return None;
+        }
+        Err(_) if path.is_dir() => {
+            problems.push(expected(format!(", found the folder `{}`", file.value)).help("name the table in it"));
+            return None;
+        }
         Err(error) => {
-            let found = match error.kind() {
-                ErrorKind::NotFound => format!("nothing at `{}`", file.value),
-                _ if path.is_dir() => format!("the folder `{}`", file.value),
-                _ => format!("`{}`: {error}", file.value),
-            };
             problems.push(
-                Problem::at(file.mark, format!("`window_table.file`: expected a file that can be read, found {found}"))
-                    .suggest(neighbor(&path, &file.value).as_deref())
-                    .help("paths are relative to the folder of the job"),
+                expected(format!(" that can be read, found `{}`: {error}", file.value))
+                    .help("check that the file can be read by you"),
             );
             return None;
         }

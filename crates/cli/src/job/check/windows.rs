@@ -10,6 +10,7 @@ use super::files::Files;
 use super::series::Series;
 use crate::job::mark::{Mark, Typed};
 use crate::job::model::JobWindow;
+use crate::job::number::readable;
 use crate::job::problem::{Problem, Problems};
 
 /// Complains about names that several windows have.
@@ -44,7 +45,7 @@ pub(super) struct WindowChecks<'a> {
 }
 
 impl WindowChecks<'_> {
-    /// The windows that take part. What is left out is not looked for.
+    /// The windows that take part. What is left out need not be there.
     pub fn check(
         &self,
         candidates: &[Candidate],
@@ -52,8 +53,15 @@ impl WindowChecks<'_> {
         tables: &mut BiasTables<'_>,
         problems: &mut Problems,
     ) -> Vec<JobWindow> {
-        let taking_part = candidates.iter().enumerate().filter(|(index, _)| !self.exclusion.window(*index));
-        taking_part.filter_map(|(index, window)| self.window(index, window, files, tables, problems)).collect()
+        let mut windows = Vec::new();
+        for (index, window) in candidates.iter().enumerate() {
+            if self.exclusion.window(index) {
+                window.replicas.iter().for_each(|replica| files.set_aside(replica));
+            } else {
+                windows.extend(self.window(index, window, files, tables, problems));
+            }
+        }
+        windows
     }
 
     fn window(
@@ -70,7 +78,11 @@ impl WindowChecks<'_> {
             problems.push(
                 Problem::at(
                     own.mark,
-                    format!("`window.temperature`: expected the temperature of the system, {}, found {}", system.value, own.value),
+                    format!(
+                        "`window.temperature`: expected the temperature of the system, {}, found {}",
+                        readable(system.value),
+                        readable(own.value)
+                    ),
                 )
                 .label(system.mark, "the temperature of the system")
                 .help("windows of one job have one temperature; solve windows of another temperature in a job of their own"),
@@ -79,7 +91,9 @@ impl WindowChecks<'_> {
         let mut replicas = Vec::new();
         let mut replica_numbers = Vec::new();
         for (replica, number) in window.replicas.iter().zip(1..) {
-            if !self.exclusion.replica(index, number) {
+            if self.exclusion.replica(index, number) {
+                files.set_aside(replica);
+            } else {
                 replicas.push(files.segments(replica, problems));
                 replica_numbers.push(number);
             }
@@ -92,6 +106,7 @@ impl WindowChecks<'_> {
             replica_numbers,
             bias: checked.bias?,
             selection,
+            automatic_start: self.series.automatic_start(window.discard),
             terms: checked.terms,
         })
     }

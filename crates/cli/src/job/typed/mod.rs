@@ -5,6 +5,7 @@
 //! What may not: converted numbers, resolved names, defaults taken from another key, anything that was looked up on the disk.
 
 mod bias;
+mod errors;
 mod exclude;
 mod profile;
 mod series;
@@ -13,6 +14,7 @@ mod system;
 mod window;
 
 pub(super) use bias::{BiasInput, TypedBias};
+pub(super) use errors::TypedErrors;
 pub(super) use exclude::{TypedExclude, TypedStretch};
 pub(super) use profile::{TypedBins, TypedProfile, TypedZero};
 pub(super) use series::{SEPARATORS, TypedColumn, TypedDiscard, TypedSeries, TypedTime};
@@ -47,6 +49,8 @@ pub(super) struct TypedJob {
     pub profile: Option<TypedProfile>,
     /// `[solver]`
     pub solver: TypedSolver,
+    /// `[errors]`
+    pub errors: TypedErrors,
     /// `[output]`
     pub output: TypedOutput,
     /// The beginning of the file.
@@ -107,6 +111,11 @@ impl TypedJob {
                 .take("solver")
                 .and_then(|field| field.table(Section::Solver, problems))
                 .map(|table| TypedSolver::read(table, problems))
+                .unwrap_or_default(),
+            errors: top
+                .take("errors")
+                .and_then(|field| field.table(Section::Errors, problems))
+                .map(|table| TypedErrors::read(table, problems))
                 .unwrap_or_default(),
             output: top
                 .take("output")

@@ -63,6 +63,8 @@ pub(in crate::job) enum TypedDiscard {
     Frames(u64),
     /// A fraction of the frames, at least 0 and below 1.
     Fraction(f64),
+    /// What each replica itself shows not to have settled.
+    Automatic,
     /// At fault, and reported.
     Faulty,
 }
@@ -145,7 +147,7 @@ impl TypedDiscard {
     fn read(field: &Field<'_>, problems: &mut Problems) -> Option<Self> {
         let mut table = field.table(Section::Discard, problems)?;
         let mark = table.mark;
-        let which = table.exactly_one(&["time", "frames", "fraction"], problems);
+        let which = table.exactly_one(&["time", "frames", "fraction", "automatic"], problems);
         let time = table.take("time");
         let unit = match which {
             Some("time") => table.require("unit", problems),
@@ -159,8 +161,11 @@ impl TypedDiscard {
         let frames = frames.and_then(|field| field.scalar(problems)?.whole(0, problems));
         let fraction = table.take("fraction");
         let fraction = fraction.and_then(|field| field.scalar(problems)?.number(Allowed::Fraction, problems));
+        let automatic = table.take("automatic");
+        let automatic = automatic.and_then(|field| field.scalar(problems)?.flag(problems));
         table.finish(problems);
         match which? {
+            "automatic" => Some(if automatic?.value { Self::Automatic } else { Self::Frames(0) }),
             "time" => Some(Self::Time { time: time?.value, unit: unit?.value, mark }),
             "frames" => Some(Self::Frames(frames?.value)),
             _ => Some(Self::Fraction(fraction?.value)),

@@ -69,13 +69,19 @@ fn value<T>(typed: Option<Typed<T>>) -> Option<T> {
 pub(in crate::job) struct TypedOutput {
     /// Folder of the results.
     pub folder: Option<Typed<String>>,
+    /// Whether the covariance of the bins is written.
+    pub covariance: Option<bool>,
 }
 
 impl TypedOutput {
     /// Reads the section.
     pub fn read(mut table: Table<'_>, problems: &mut Problems) -> Self {
         let folder = table.take("folder");
+        let covariance = table.take("covariance");
         table.finish(problems);
-        Self { folder: folder.and_then(|field| field.scalar(problems)?.text(problems)) }
+        Self {
+            folder: folder.and_then(|field| field.scalar(problems)?.text(problems)),
+            covariance: value(covariance.and_then(|field| field.scalar(problems)?.flag(problems))),
+        }
     }
 }
