@@ -200,9 +200,12 @@ fn draw_frame(drawing: &mut Drawing, scale: &Scale, in_degrees: bool) {
     drawing.path("frame", &[(LEFT, TOP), (right, TOP), (right, bottom), (LEFT, bottom)], true);
 }
 
+/// One of the two half widths of a point.
+type HalfWidth = fn(&CurvePoint) -> Option<f64>;
+
 fn draw_curve(drawing: &mut Drawing, scale: &Scale, curve: &Curve) {
     let at = |point: &CurvePoint, shift: f64| (scale.x(point.position), scale.y(point.energy + shift));
-    let half_widths: [(&str, fn(&CurvePoint) -> Option<f64>); 2] =
+    let half_widths: [(&str, HalfWidth); 2] =
         [("curve-band", |point| point.band_half_width), ("band", |point| point.half_width)];
     for (class, half_width) in half_widths {
         for stretch in curve.stretches(|point| half_width(point).is_some()) {

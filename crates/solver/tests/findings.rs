@@ -5,9 +5,9 @@ mod common;
 
 use common::{CellChoice, assemble, axis, bias, sampled, solved};
 use spandrel_bias::Bias;
+use spandrel_solver::bootstrap::{BetweenReplicas, ReplicaError};
 use spandrel_solver::condense::BinGrid;
 use spandrel_solver::ensemble::Ensemble;
-use spandrel_solver::bootstrap::{BetweenReplicas, ReplicaError};
 use spandrel_solver::findings::{
     Finding, Severity, look_at_ensemble, look_at_links, look_at_profile, look_at_replicas,
 };

@@ -83,38 +83,6 @@ fn blocks_number_256_to_512_and_hold_plain_means_whatever_the_length() {
     }
 }
 
-/// AR(1): statistical inefficiency (1 + ρ)/(1 − ρ) with ρ = exp(−1/τ).
-///
-/// An initial sequence takes positive noise for correlation and so leans upward (Geyer 1992), which is the safe side: errors grow, effective
-/// samples shrink. The claim tested is that it leans by less than a tenth and does not fall short.
-#[test]
-fn inefficiency_of_an_autoregression_is_met_or_exceeded_by_less_than_a_tenth() {
-    let mut generator = stream(17, 2);
-    for (time, n_samples) in [(0.8, 500), (0.8, 40_000), (4.0, 6_000), (23.0, 40_000)] {
-        let correlation = Correlation::Exponential { time };
-        let exact = correlation.statistical_inefficiency();
-        let runs = 200;
-        let (mut sum, mut squares) = (0.0, 0.0);
-        for _ in 0..runs {
-            let series = correlation.sample_latent(n_samples, &mut generator);
-            let mut blocks = BlockMeans::new(1);
-            let sums = cascade(series.iter().copied());
-            series.iter().for_each(|&z| blocks.push(&[z]));
-            let lag = MeanLag::of_block_means(&blocks.channel(0)).unwrap();
-            let ratio = lag.statistical_inefficiency(blocks.block_length(), sums.variance().unwrap()) / exact;
-            sum += ratio;
-            squares += ratio * ratio;
-        }
-        let mean = sum / f64::from(runs);
-        let error = ((squares / f64::from(runs) - mean * mean) / f64::from(runs)).sqrt();
-        let noise = tolerance::STANDARD_ERRORS * error;
-        assert!(
-            mean > 1.0 - noise && mean < 1.1 + noise,
-            "time {time}, {n_samples} samples: mean ratio {mean} ± {error}"
-        );
-    }
-}
-
 #[test]
 fn a_constant_series_has_no_correlation_to_speak_of() {
     assert_eq!(MeanLag::of_block_means(&[4.1; 30]), None);

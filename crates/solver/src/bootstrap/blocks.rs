@@ -105,10 +105,9 @@ mod tests {
     use super::*;
     use rand::SeedableRng;
 
-    /// Expected spread of the mean of b blocks drawn on a ring, times n/b-free: the double sum over an exponential correlation, entry by entry.
-    fn shown_by_brute_force(n: usize, l: usize, rho: f64) -> f64 {
-        let covariance = |i: usize, j: usize| rho.powi(i32::try_from(i.abs_diff(j)).unwrap_or(i32::MAX));
-        // Coefficients of block sum minus l times the mean, for each start.
+    /// The double sum over all groups, entry by entry: mean of the squared deviation of a block's sum from l times the mean, over l times
+    /// the long-run variance. `covariance` is that of the means of two groups, by their distance.
+    fn shown_by_brute_force(n: usize, l: usize, long_run: f64, covariance: impl Fn(usize) -> f64) -> f64 {
         let mut sum = 0.0;
         for start in 0..n {
             let mut coefficients = vec![-(l as f64) / n as f64; n];
@@ -117,30 +116,29 @@ mod tests {
             }
             for i in 0..n {
                 for j in 0..n {
-                    sum += coefficients[i] * coefficients[j] * covariance(i, j);
+                    sum += coefficients[i] * coefficients[j] * covariance(i.abs_diff(j));
                 }
             }
         }
-        let long_run = (1.0 + rho) / (1.0 - rho);
         sum / (n * l) as f64 / long_run
     }
 
     #[test]
     fn shown_part_is_that_of_an_exponential_correlation() {
-        // Groups short against the lag, so that the sum over groups is close to the integral that V stands for.
         for (n, l) in [(60, 1), (60, 20), (61, 13), (40, 7), (90, 30)] {
-            let mean_lag = 8.3;
-            let expected = shown_by_brute_force(n, l, (-1.0_f64 / mean_lag).exp());
-            let found = shown_part(n, l, mean_lag);
-            // Single values in place of means of unit stretches: (1/12)(1/8.3)² relative for long blocks, 1/(2·8.3) absolute for the shortest.
-            assert!(
-                (found - expected).abs() < 0.5 / mean_lag * (l as f64).recip().max(0.1),
-                "{n}, {l}: {found} against {expected}"
-            );
-        }
-        for (n, l) in [(60, 1), (61, 13)] {
-            let expected = shown_by_brute_force(n, l, 0.0);
-            assert!((shown_part(n, l, 0.0) - expected).abs() < 1e-12, "{n}, {l}");
+            for s in [0.4, 8.3, 70.0_f64] {
+                // Covariances of means over stretches of length 1 under exp(−t/s), whose integral is 2s.
+                let lost = -(-1.0 / s).exp_m1();
+                let covariance = |distance: usize| match distance {
+                    0 => 2.0 * (s - s * s * lost),
+                    _ => (s * lost).powi(2) * (-(distance as f64 - 1.0) / s).exp(),
+                };
+                let expected = shown_by_brute_force(n, l, 2.0 * s, covariance);
+                let found = shown_part(n, l, s);
+                assert!((found - expected).abs() < 1e-11, "{n}, {l}, {s}: {found} against {expected}");
+            }
+            let independent = shown_by_brute_force(n, l, 1.0, |distance| f64::from(u8::from(distance == 0)));
+            assert!((shown_part(n, l, 0.0) - independent).abs() < 1e-11, "{n}, {l}");
         }
     }
 

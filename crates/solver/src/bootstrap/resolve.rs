@@ -138,9 +138,12 @@ mod tests {
         solve(ensemble, &links, &SolveOptions::default(), &mut |_, _| ControlFlow::Continue(())).unwrap()
     }
 
-    /// How often each sample of a window is taken: stretches of sixteen, twice as many early ones in one window and late ones in the next.
+    /// How often each sample of a window is taken: those of the upper quarter twice, those of the lower quarter not at all.
     fn times(k: usize) -> Vec<u32> {
-        (0..128).map(|i| [2, 2, 1, 2, 0, 1, 0, 0][(i / 16 + 5 * k) % 8]).collect()
+        let samples = series(k);
+        let mut sorted = samples.clone();
+        sorted.sort_by(f64::total_cmp);
+        samples.iter().map(|x| u32::from(*x >= sorted[32]) + u32::from(*x >= sorted[96])).collect()
     }
 
     /// δ by window of the replicate with those times.
@@ -180,10 +183,10 @@ mod tests {
         let delta = resolved(&ensemble_of_all, &solution, 0.0);
         for k in 0..WINDOWS.len() {
             let change = anew[k] - solution.free_energies[k];
-            // The last step taken leaves its square times a constant; the rest is the 1e-10 of the solves.
-            assert!((delta[k] - change).abs() < 1e-9, "window {k}: {} against {change}", delta[k]);
+            // The last step, below 1e-8, leaves a tenth of itself at most; the solves are exact to 1e-10.
+            assert!((delta[k] - change).abs() < 1.2e-9, "window {k}: {} against {change}", delta[k]);
         }
-        assert!(largest(&delta) > 0.05, "{delta:?}");
+        assert!(largest(&delta) > 0.3, "{delta:?}");
     }
 
     #[test]

@@ -45,13 +45,4 @@ impl MeanLag {
         let mean_lag = (2.0 * lag_sum / block_inefficiency.max(1.0)).clamp(0.0, b / 2.0);
         Some(Self { mean_lag, block_inefficiency, block_variance: variance })
     }
-
-    /// Statistical inefficiency of the samples: long-run variance over plain variance, block length × Var(block means) × G / Var(samples).
-    ///
-    /// At least 1: fewer samples are never taken for more. `sample_variance` in squared units of the means.
-    #[must_use]
-    pub fn statistical_inefficiency(&self, block_length: u64, sample_variance: f64) -> f64 {
-        let long_run = block_length as f64 * self.block_variance * self.block_inefficiency;
-        (long_run / sample_variance).max(1.0)
-    }
 }
