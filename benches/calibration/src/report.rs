@@ -5,7 +5,7 @@ use crate::jackknife::{Estimate, jackknife, ratio};
 use crate::method::{ErrorBar, Method};
 use crate::oracle::Oracle;
 use crate::outcome::{Refusal, Replicate};
-use crate::score::Score;
+use crate::score::{Score, held};
 use crate::settings::Settings;
 use crate::system::System;
 use std::collections::BTreeMap;
@@ -85,7 +85,6 @@ impl OracleScore {
             };
             replicates.iter().map(part).collect()
         };
-        let held = |miss: f64, half_width: f64| f64::from(u8::from(miss.abs() <= half_width));
         let root = |[sum, n]: &[f64; 2]| ratio(*sum, *n).map(f64::sqrt);
         let plain = |[sum, n]: &[f64; 2]| ratio(*sum, *n);
         Self {

@@ -28,7 +28,9 @@ pub struct Score {
     pub coverage_95: Option<Estimate>,
     /// Share of 68 % intervals that hold the truth.
     pub coverage_68: Option<Estimate>,
-    /// The same with the exact standard error and normal quantiles in place of each printed interval.
+    /// Share of the 95 % intervals given without reserve that hold the truth.
+    pub determined_95: Option<Estimate>,
+    /// Coverage with the exact standard error and normal quantiles in place of each printed 95 % interval.
     pub oracle_95: Option<Estimate>,
     /// As `oracle_95`, for 68 %.
     pub oracle_68: Option<Estimate>,
@@ -85,13 +87,13 @@ impl Score {
                 Some((ratio(*squares, *n)? - ratio(*sum, *n)?.powi(2)).max(0.0).sqrt())
             })
         };
-        let held = |miss: f64, half_width: f64| f64::from(u8::from(miss.abs() <= half_width));
         let all = || intervals.iter().flatten();
         Self {
             printed: share(&|_| true),
             determined: share(&|i| i.bar.determined),
             coverage_95: mean(&|i| held(i.miss, i.bar.half_width_95)),
             coverage_68: mean(&|i| held(i.miss, i.bar.half_width_68)),
+            determined_95: determined(&intervals),
             oracle_95: mean(&|i| held(i.miss, i.exact.half_width_95)),
             oracle_68: mean(&|i| held(i.miss, i.exact.half_width_68)),
             excess_95: mean(&|i| held(i.miss, i.bar.half_width_95) - held(i.miss, i.exact.half_width_95)),
@@ -120,6 +122,19 @@ fn printed(replicate: &Replicate, method: usize, standard_errors: &[f64]) -> Vec
         .collect()
 }
 
+/// 1 if an interval of this half width holds the truth, 0 if not.
+pub(crate) fn held(miss: f64, half_width: f64) -> f64 {
+    f64::from(u8::from(miss.abs() <= half_width))
+}
+
+fn determined(intervals: &[Vec<Interval>]) -> Option<Estimate> {
+    let part = |own: &Vec<Interval>| {
+        let without_reserve = own.iter().filter(|i| i.bar.determined);
+        without_reserve.fold([0.0, 0.0], |[sum, n], i| [sum + held(i.miss, i.bar.half_width_95), n + 1.0])
+    };
+    jackknife(&intervals.iter().map(part).collect::<Vec<_>>(), |[sum, n]| ratio(*sum, *n))
+}
+
 fn joint(intervals: &[Vec<Interval>]) -> Option<Estimate> {
     let part = |own: &Vec<Interval>| {
         let all_held = own.iter().all(|i| i.miss.abs() <= i.bar.half_width_95);
@@ -132,8 +147,8 @@ fn joint(intervals: &[Vec<Interval>]) -> Option<Estimate> {
 fn worst_bin(intervals: &[Vec<Interval>], n_scored: usize) -> Option<WorstBin> {
     let mut counts = vec![(0.0, 0.0); n_scored];
     for interval in intervals.iter().flatten() {
-        let (held, n) = &mut counts[interval.place];
-        *held += f64::from(u8::from(interval.miss.abs() <= interval.bar.half_width_95));
+        let (n_held, n) = &mut counts[interval.place];
+        *n_held += held(interval.miss, interval.bar.half_width_95);
         *n += 1.0;
     }
     let least = (WORST_BIN_SHARE * intervals.len() as f64).max(1.0);
@@ -141,8 +156,8 @@ fn worst_bin(intervals: &[Vec<Interval>], n_scored: usize) -> Option<WorstBin> {
         .into_iter()
         .enumerate()
         .filter(|(_, (_, n))| *n >= least)
-        .map(|(place, (held, n))| {
-            let value = held / n;
+        .map(|(place, (n_held, n))| {
+            let value = n_held / n;
             let standard_error = (value * (1.0 - value) / n).sqrt();
             WorstBin { place, coverage_95: Estimate { value, standard_error } }
         })
@@ -190,6 +205,7 @@ mod tests {
         close(value(score.determined), 2.0 / 6.0);
         close(value(score.coverage_95), 2.0 / 3.0);
         close(value(score.coverage_68), 1.0 / 3.0);
+        close(value(score.determined_95), 1.0);
         // Exact half widths 1.96 σ: 0.39 holds 0.3 but not 0.6, 1.37 holds 1.2; at 68 % (0.199 and 0.696) none is held.
         close(value(score.oracle_95), 2.0 / 3.0);
         close(value(score.oracle_68), 0.0);

@@ -6,13 +6,14 @@ use crate::report::Report;
 use crate::score::Score;
 use std::fmt::Write as _;
 
-const HEADER: [&str; 17] = [
+const HEADER: [&str; 18] = [
     "system",
     "method",
     "printed %",
     "determined %",
     "95 %",
     "68 %",
+    "95, determined",
     "oracle 95",
     "oracle 68",
     "95 - oracle",
@@ -64,6 +65,7 @@ fn row(report: &Report, method: Method, score: &Score) -> [String; HEADER.len()]
         percent(score.determined),
         percent(score.coverage_95),
         percent(score.coverage_68),
+        percent(score.determined_95),
         percent(score.oracle_95),
         percent(score.oracle_68),
         percent(score.excess_95),

@@ -66,6 +66,7 @@ fn columns(report: &Report, method: &str, score: &Score) -> Vec<(String, String)
         ("determined", score.determined),
         ("coverage_95", score.coverage_95),
         ("coverage_68", score.coverage_68),
+        ("determined_95", score.determined_95),
         ("oracle_95", score.oracle_95),
         ("oracle_68", score.oracle_68),
         ("excess_95", score.excess_95),

@@ -19,6 +19,8 @@ const ACCURACY: f64 = 1e-4;
 ///
 /// Var Q = Σₖ ωₖ² Nₖ σ²ₖ with σ²ₖ the long-run variance along window k of the influence φ(x) = q(x) − (∂Q/∂f)ᵀ H⁻¹ M w(x) at the exact
 /// free energies, all integrals over the exact distributions of the windows.
+///
+/// The true error of short runs is smaller: with one correlation time the ends of a run take the part g/(2N) from the variance of its means.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Oracle {
     /// One for each bin asked for, kT.

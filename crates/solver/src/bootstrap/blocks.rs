@@ -15,7 +15,7 @@ use serde::Serialize;
 ///
 /// (1/l) · mean over the n blocks of their V − (l/n²) V(n),
 ///
-/// where a block across the end of the run has the two V of its pieces. Independent groups show 1 − l/n.
+/// where a block across the end of the run has the two V of its pieces, with what correlation is left between them. Independent groups show 1 − l/n.
 /// A replicate therefore draws that part of n/l blocks, and each counts for more: the mean stays, the variance comes out whole, and no count
 /// turns negative (for independent data this is the n − 1 draws out of n of Rao & Wu 1988).
 #[derive(Debug, Clone, Copy, PartialEq, Serialize)]
@@ -95,7 +95,15 @@ fn shown_part(n: usize, l: usize, mean_lag: f64) -> f64 {
         if mean_lag > 0.0 { j * (1.0 + (-u).exp_m1() / u) } else { j }
     };
     let whole = (n - l + 1) as f64 * sum_variance(l);
-    let across: f64 = (1..l).map(|j| sum_variance(j) + sum_variance(l - j)).sum();
+    // The pieces of a block across the end stand n − l groups apart in time: what is left of their correlation counts twice.
+    let lost = |groups: usize| -(-(groups as f64) / mean_lag).exp_m1();
+    let correlated = |j: usize| mean_lag * lost(j) * lost(l - j) * (-((n - l) as f64) / mean_lag).exp();
+    let piece_by_piece = |j: usize| sum_variance(j) + sum_variance(l - j);
+    let across: f64 = if mean_lag > 0.0 {
+        (1..l).map(|j| piece_by_piece(j) + correlated(j)).sum()
+    } else {
+        (1..l).map(piece_by_piece).sum()
+    };
     let (n_groups, length) = (n as f64, l as f64);
     (whole + across) / (n_groups * length) - length / (n_groups * n_groups) * sum_variance(n)
 }

@@ -19,10 +19,11 @@ pub enum Support {
 pub const FEW_BATCHES: f64 = 7.0;
 /// Degrees of freedom below which an error is provisional.
 pub const FEW_DEGREES: f64 = 10.0;
-/// Mean number of batches below which an error is not determined: 68 % intervals lose their coverage there (some 8 effective samples).
-pub const TOO_FEW_BATCHES: f64 = 4.0;
+/// Mean number of batches below which an error is not determined. Calibrated on replicate experiments with 12 and 5 effective samples a
+/// window: a higher limit leaves those errors that came out too small.
+pub const TOO_FEW_BATCHES: f64 = 3.0;
 /// Degrees of freedom below which an error is not determined.
-pub const TOO_FEW_DEGREES: f64 = 3.0;
+pub const TOO_FEW_DEGREES: f64 = 2.0;
 
 /// Standard error of a quantity from independent parts, each a sum of squared deviations of batches.
 #[derive(Debug, Clone, Copy, PartialEq, Serialize)]

@@ -5,8 +5,10 @@ use std::ops::RangeInclusive;
 
 /// Effective samples below which a bin's error, or one that refers to it, is not determined.
 ///
-/// An error of ln p presumes that the count could not as well have been none: with 5 independent samples the chance of that is e⁻⁵.
-pub const FEWEST_EFFECTIVE_SAMPLES: f64 = 5.0;
+/// An error of ln p presumes that the count could not as well have been none, which has a probability of e⁻² with 2 independent samples.
+/// On replicate experiments of known truth the 95 % intervals printed with this limit held 94.5 % at 12 effective samples a window and
+/// 92.5 % at 5; a limit of 5 prints fewer of them, and those that are left hold less, since errors that came out too small are among them.
+pub const FEWEST_EFFECTIVE_SAMPLES: f64 = 2.0;
 
 /// What was sampled in a bin.
 #[derive(Debug, Clone, Copy, Default)]
