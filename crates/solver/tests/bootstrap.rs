@@ -87,8 +87,11 @@ fn counts_of_a_free_run_scatter_as_a_multinomial_does() {
         let exact = (1.0 / bin.n_samples as f64 + 1.0 / zero.n_samples as f64).sqrt();
         // A standard deviation is known to 1/√(2·999) from the replicates and to 1/√(2·99) from the groups.
         let bound = tolerance::STANDARD_ERRORS * (1.0_f64 / (2.0 * 999.0) + 1.0 / (2.0 * 99.0)).sqrt();
-        let found = error.uncertainty.unwrap().standard_error;
-        assert!((found / exact - 1.0).abs() < bound, "{found} against {exact}");
+        let found = error.uncertainty.unwrap();
+        assert!((found.standard_error / exact - 1.0).abs() < bound, "{found:?} against {exact}");
+        // Relative variances 2/99 and 2/999 add up.
+        let degrees = (1.0_f64 / 99.0 + 1.0 / 999.0).recip();
+        assert!((found.degrees_of_freedom / degrees - 1.0).abs() < tolerance::ROUNDING_RELATIVE, "{found:?}");
         compared += 1;
     }
     assert_eq!(compared, 4);
@@ -110,6 +113,20 @@ fn a_bin_with_a_single_sample_is_empty_as_often_as_its_group_is_not_drawn() {
     assert!((empty - chance).abs() < tolerance::STANDARD_ERRORS * error, "{empty} against {chance}");
     assert_eq!((last.uncertainty, last.ratio), (None, None));
     assert!(bootstrap.bins[..4].iter().all(|error| error.n_empty == 0));
+}
+
+#[test]
+fn a_bin_seen_in_a_single_visit_has_no_resampled_error() {
+    let mut run: Vec<f64> = uniform(6400, 1).iter().map(|x| 0.99 * x).collect();
+    run[1930..1936].fill(1.01);
+    let analysis = Analysis::of(unbiased(&[run], 0.25), 0.4);
+    let bootstrap = analysis.bootstrap(400);
+    let (bin, error) = (analysis.profile.bins.last().unwrap(), bootstrap.bins.last().unwrap());
+    assert_eq!(bin.n_samples, 6);
+    assert!(bin.uncertainty.is_some());
+    // Its group is drawn in two replicates out of three.
+    assert!((80..240).contains(&error.n_empty), "{error:?}");
+    assert_eq!((error.uncertainty, error.ratio), (None, None));
 }
 
 #[test]
