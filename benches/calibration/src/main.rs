@@ -22,10 +22,7 @@ fn run(arguments: &Arguments) -> Result<(), Box<dyn Error>> {
     if let Some(n_threads) = arguments.threads {
         rayon::ThreadPoolBuilder::new().num_threads(n_threads.into()).build_global()?;
     }
-    let file = match &arguments.csv {
-        Some(path) => Some(CsvFile::create(path).map_err(|error| format!("`{}`: {error}", path.display()))?),
-        None => None,
-    };
+    let file = arguments.csv.as_deref().map(CsvFile::prepare).transpose()?;
     let settings = arguments.settings();
     let mut reports = Vec::new();
     for system in arguments.systems() {

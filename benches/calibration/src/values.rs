@@ -3,34 +3,44 @@
 use crate::jackknife::Estimate;
 use crate::report::Report;
 use crate::score::Score;
+use std::fs::{self, File};
 use std::io;
 use std::path::{Path, PathBuf};
-use tempfile::NamedTempFile;
 
 /// A CSV file that is not there until it is whole.
 #[derive(Debug)]
 pub struct CsvFile {
-    file: NamedTempFile,
     path: PathBuf,
+    /// Where it is written before it takes its place.
+    partial: PathBuf,
 }
 
 impl CsvFile {
-    /// Makes sure that a file can be written beside `path`; a study is long.
+    /// Makes sure that a file can be written beside `path`: a study is long, and its numbers should have a place to go.
     ///
     /// # Errors
-    /// Those of the file system.
-    pub fn create(path: &Path) -> io::Result<Self> {
-        let folder = path.parent().filter(|folder| !folder.as_os_str().is_empty()).unwrap_or(Path::new("."));
-        Ok(Self { file: NamedTempFile::new_in(folder)?, path: path.to_path_buf() })
+    /// Those of the file system, with the path in the message.
+    pub fn prepare(path: &Path) -> io::Result<Self> {
+        let mut partial = path.to_path_buf().into_os_string();
+        partial.push(".partial");
+        let file = Self { path: path.to_path_buf(), partial: partial.into() };
+        match File::create(&file.partial).and_then(|_| fs::remove_file(&file.partial)) {
+            Ok(()) => Ok(file),
+            Err(error) => Err(file.named(&error)),
+        }
     }
 
     /// Writes one row a system and method, and puts the file in its place. Shares are between 0 and 1; each estimate is followed by its
     /// standard error; what cannot be given is empty.
     ///
     /// # Errors
-    /// Those of the file system.
-    pub fn write(mut self, reports: &[Report]) -> io::Result<()> {
-        let mut writer = csv::Writer::from_writer(&mut self.file);
+    /// Those of the file system, with the path in the message.
+    pub fn write(&self, reports: &[Report]) -> io::Result<()> {
+        self.put(reports).map_err(|error| self.named(&error))
+    }
+
+    fn put(&self, reports: &[Report]) -> io::Result<()> {
+        let mut writer = csv::Writer::from_path(&self.partial)?;
         for (number, (report, method, score)) in rows(reports).enumerate() {
             let columns = columns(report, method, score);
             if number == 0 {
@@ -40,8 +50,11 @@ impl CsvFile {
         }
         writer.flush()?;
         drop(writer);
-        self.file.persist(&self.path)?;
-        Ok(())
+        fs::rename(&self.partial, &self.path)
+    }
+
+    fn named(&self, error: &io::Error) -> io::Error {
+        io::Error::new(error.kind(), format!("`{}`: {error}", self.path.display()))
     }
 }
 

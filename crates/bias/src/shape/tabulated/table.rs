@@ -189,10 +189,12 @@ impl Tabulated {
 
     pub(in crate::shape) fn breakpoints(&self) -> Vec<f64> {
         let (first, last) = self.range();
+        // A table of a whole turn ends where it begins; the point where it jumps is added below.
+        let has_ends = !self.closed && self.period.is_none_or(|period| last - first < period);
         let mut breakpoints = match (self.interpolation, self.outside) {
             (Interpolation::Linear, _) => self.positions.clone(),
             // Beyond its ends the table is flat, or not at all: a cell that straddles one would speak for samples outside.
-            (Interpolation::Cubic, OutsideRule::Hold | OutsideRule::Error) if !self.closed => vec![first, last],
+            (Interpolation::Cubic, OutsideRule::Hold | OutsideRule::Error) if has_ends => vec![first, last],
             (Interpolation::Cubic, _) => Vec::new(),
         };
         if self.period.is_some() && !self.closed {
